@@ -1,0 +1,10 @@
+/** Every table, for drizzle and its migrations. */
+export * from './accounts.ts'
+export * from './audit.ts'
+export * from './logs.ts'
+export * from './mail.ts'
+export * from './proposals.ts'
+export * from './queue.ts'
+export * from './reviews.ts'
+export * from './tables.ts'
+export * from './vehicles.ts'

@@ -1,0 +1,143 @@
+/** Proposals: what the learner says about each cell, and what a person decides about it. */
+import { z } from 'zod'
+import { endpoint } from '../endpoint.ts'
+import { cellDecisions, proposalStates } from '../lifecycle.ts'
+import { GridShape, Id, Instant, Numbers } from '../wire.ts'
+import { Revision } from './tables.ts'
+import { VehicleRef } from './vehicles.ts'
+
+export const Held = z.object({ cell: z.number().int(), reason: z.string(), releaseS: z.number().nullable() })
+export type Held = z.infer<typeof Held>
+
+export const LeftOut = z.object({
+  logId: Id,
+  totalS: z.number(),
+  usedS: z.number(),
+  /** Seconds left out by reason, such as "fuel cut" or "cold". */
+  leftOutS: z.record(z.string(), z.number()),
+})
+export type LeftOut = z.infer<typeof LeftOut>
+
+export const ProposalLine = z.object({
+  id: Id,
+  vehicleId: Id,
+  number: z.number().int(),
+  state: z.enum(proposalStates),
+  /** What the learner is doing, and how far, while it learns. */
+  step: z.string(),
+  progress: z.number(),
+  trouble: z.string().nullable(),
+  requestedBy: z.string(),
+  requestedAt: Instant,
+  base: z.object({ id: Id, number: z.number().int() }),
+  logs: z.array(z.object({ id: Id, number: z.number().int(), title: z.string() })),
+  counts: z
+    .object({ known: z.number(), total: z.number(), open: z.number(), held: z.number(), changed: z.number() })
+    .nullable(),
+  revisionId: Id.nullable(),
+})
+export type ProposalLine = z.infer<typeof ProposalLine>
+
+export const Proposal = ProposalLine.extend({
+  /** Grows with every decision; send the one you saw, so that nobody's decision is lost silently. */
+  version: z.number().int(),
+  settings: z.record(z.string(), z.unknown()),
+  coreVersion: z.string(),
+  surface: z
+    .object({
+      grid: GridShape,
+      current: Numbers,
+      /** The fitted surface after the lean guard: what accepting a cell takes. */
+      proposed: Numbers,
+      /** The fitted surface itself. */
+      fitted: Numbers,
+      evidenceS: Numbers,
+      /** One standard deviation, % of the value. */
+      sigmaPct: Numbers,
+      misfitPct: Numbers,
+      /** The spreadsheet's nearest-cell and bilinear averages, a check by hand. */
+      handNearest: Numbers,
+      handBilinear: Numbers,
+      held: z.array(Held),
+      leftOut: z.array(LeftOut),
+      delay: z.object({ idleS: z.number(), cruiseS: z.number(), fullS: z.number() }).nullable(),
+    })
+    .nullable(),
+  /** One per cell; `byHand` holds the value where the decision is by hand or pinned by hand. */
+  decisions: z.array(z.enum(cellDecisions)),
+  byHand: Numbers,
+  /** A newer revision of the table than this proposal started from, if there is one. */
+  overtakenBy: z.object({ id: Id, number: z.number().int() }).nullable(),
+})
+export type Proposal = z.infer<typeof Proposal>
+
+export const ProposalRef = z.strictObject({ proposalId: Id })
+
+export const requestProposal = endpoint({
+  method: 'POST',
+  path: '/api/vehicles/:vehicleId/proposals',
+  access: 'proposal:edit',
+  summary: 'Learn from logs; the answer is a proposal that fills in the background',
+  params: VehicleRef,
+  body: z.strictObject({
+    logIds: z.array(Id).min(1).max(100),
+    /** Largest step of a cell in one revision, %. */
+    stepCapPct: z.number().min(1).max(50).default(20),
+  }),
+  response: Proposal,
+})
+export const listProposals = endpoint({
+  method: 'GET',
+  path: '/api/vehicles/:vehicleId/proposals',
+  access: 'proposal:read',
+  summary: 'Proposals of the vehicle, newest first',
+  params: VehicleRef,
+  response: z.object({ proposals: z.array(ProposalLine) }),
+})
+export const getProposal = endpoint({
+  method: 'GET',
+  path: '/api/proposals/:proposalId',
+  access: 'proposal:read',
+  summary: 'A proposal with its surface and the decisions so far',
+  params: ProposalRef,
+  response: Proposal,
+})
+export const decideCells = endpoint({
+  method: 'POST',
+  path: '/api/proposals/:proposalId/decisions',
+  access: 'proposal:edit',
+  summary: 'Accept, keep, set by hand, pin or reopen cells',
+  params: ProposalRef,
+  body: z.strictObject({
+    version: z.number().int(),
+    cells: z
+      .array(
+        z.strictObject({
+          cell: z.number().int().min(0),
+          decision: z.enum(cellDecisions),
+          /** VE in %, needed for by-hand. */
+          value: z.number().min(1).max(200).optional(),
+        }),
+      )
+      .min(1)
+      .max(4096),
+  }),
+  response: Proposal,
+})
+export const cancelProposal = endpoint({
+  method: 'POST',
+  path: '/api/proposals/:proposalId/cancel',
+  access: 'proposal:edit',
+  summary: 'Stop learning, or lay an open proposal aside',
+  params: ProposalRef,
+  response: Proposal,
+})
+export const makeRevision = endpoint({
+  method: 'POST',
+  path: '/api/proposals/:proposalId/revision',
+  access: 'proposal:edit',
+  summary: 'Make a draft revision of the accepted and hand-set cells; open and held cells keep their value',
+  params: ProposalRef,
+  body: z.strictObject({ version: z.number().int(), note: z.string().max(500).default('') }),
+  response: Revision,
+})
