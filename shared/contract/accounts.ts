@@ -4,13 +4,23 @@ import { roles } from '../access.ts'
 import { endpoint } from '../endpoint.ts'
 import { Done, Id, Instant } from '../wire.ts'
 
+/** Bytes of a text in UTF-8. */
+function utf8Length(text: string): number {
+  let bytes = 0
+  for (const point of text) {
+    const code = point.codePointAt(0)!
+    bytes += code < 0x80 ? 1 : code < 0x800 ? 2 : code < 0x10000 ? 3 : 4
+  }
+  return bytes
+}
+
 export const RoleName = z.enum(roles)
 export const Email = z.email().max(254)
 /** NIST SP 800-63B-4: length and no composition rule; bcrypt reads 72 bytes, longer ones are refused, never cut. */
 export const Password = z
   .string()
   .min(12, 'A password needs at least 12 characters')
-  .refine((text) => new Blob([text]).size <= 72, 'A password may be at most 72 bytes long')
+  .refine((text) => utf8Length(text) <= 72, 'A password may be at most 72 bytes long')
 export const PersonName = z.string().trim().min(1, 'A name is needed').max(80)
 
 export const Workshop = z.object({ id: Id, name: z.string(), allowOwnSignOff: z.boolean() })

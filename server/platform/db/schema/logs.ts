@@ -1,6 +1,5 @@
 /** Tables of the logs noun: logs, the kept originals, the channel blocks, the remembered mappings. */
 import {
-  customType,
   date,
   doublePrecision,
   index,
@@ -18,9 +17,6 @@ import { people } from './accounts.ts'
 import { bytes, createdAt, id, instant } from './columns.ts'
 import { engineSheets, vehicles } from './vehicles.ts'
 import { revisions } from './tables.ts'
-
-/** Blocks are written by COPY and are already packed; the storage and lz4 setting is in the migration by hand. */
-const packed = customType<{ data: Uint8Array; driverData: Buffer }>({ dataType: () => 'bytea' })
 
 export const logs = pgTable(
   'logs',
@@ -69,7 +65,7 @@ export const logOriginals = pgTable(
       .notNull()
       .references(() => logs.id, { onDelete: 'cascade' }),
     piece: integer().notNull(),
-    data: packed().notNull(),
+    data: bytes().notNull(),
   },
   (table) => [primaryKey({ columns: [table.logId, table.piece] })],
 )
@@ -84,9 +80,9 @@ export const logBlocks = pgTable(
     channel: text().notNull(),
     block: integer().notNull(),
     samples: integer().notNull(),
-    data: packed().notNull(),
+    data: bytes().notNull(),
     /** Lowest and highest of every 64 samples, Float32 pairs. */
-    level: packed().notNull(),
+    level: bytes().notNull(),
   },
   (table) => [primaryKey({ columns: [table.logId, table.channel, table.block] })],
 )
