@@ -1,5 +1,5 @@
 /** Tables of the accounts noun: people, workshops, memberships, sessions, links, access tokens. */
-import { boolean, index, pgTable, primaryKey, text, uuid } from 'drizzle-orm/pg-core'
+import { boolean, index, integer, pgTable, primaryKey, text, uuid } from 'drizzle-orm/pg-core'
 import { createdAt, id, instant } from './columns.ts'
 
 export const workshops = pgTable('workshops', {
@@ -104,3 +104,10 @@ export const accessTokens = pgTable(
   },
   (table) => [index().on(table.personId)],
 )
+
+/** Failed tries at sign-in and resets, by address and by account. */
+export const tries = pgTable('tries', {
+  key: text().primaryKey(),
+  windowStart: instant().notNull(),
+  tries: integer().notNull(),
+})

@@ -1,0 +1,7 @@
+/** Every job there is, gathered from the platform and the features. */
+import { logJobs } from './features/logs/jobs.ts'
+import { proposalJobs } from './features/proposals/jobs.ts'
+import { mailJobs } from './platform/mail/send.ts'
+import type { JobDefinition } from './platform/queue/run.ts'
+
+export const jobs: readonly JobDefinition[] = [...mailJobs, ...logJobs, ...proposalJobs]

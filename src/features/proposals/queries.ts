@@ -1,0 +1,67 @@
+/** Server state of proposals: what is read, how long it is fresh, and the changes. */
+import { queryOptions, useMutation, useQueryClient } from '@tanstack/react-query'
+import {
+  cancelProposal,
+  decideCells,
+  getProposal,
+  listProposals,
+  makeRevision,
+  requestProposal,
+  type Proposal,
+} from '../../../shared/contract/proposals.ts'
+import type { ProposalState } from '../../../shared/lifecycle.ts'
+import { call } from '../../lib/api.ts'
+
+const running = (state: ProposalState | undefined): boolean => state === 'queued' || state === 'learning'
+
+export const proposalQueries = {
+  all: () => ['proposals'] as const,
+  list: (vehicleId: string) =>
+    queryOptions({
+      queryKey: [...proposalQueries.all(), 'list', vehicleId],
+      queryFn: ({ signal }) => call(listProposals, { params: { vehicleId }, signal }),
+    }),
+  detail: (proposalId: string) =>
+    queryOptions({
+      queryKey: [...proposalQueries.all(), 'detail', proposalId],
+      queryFn: ({ signal }) => call(getProposal, { params: { proposalId }, signal }),
+      refetchInterval: (query) => (running(query.state.data?.state) ? 700 : false),
+    }),
+}
+
+export function useRequestProposal(vehicleId: string) {
+  const client = useQueryClient()
+  return useMutation({
+    mutationFn: (body: { logIds: string[]; stepCapPct: number }) =>
+      call(requestProposal, { params: { vehicleId }, body }),
+    onSuccess: () => client.invalidateQueries({ queryKey: proposalQueries.all() }),
+  })
+}
+
+/** Sends decisions with the version they were made on; the answer replaces the proposal on the page. */
+export function useDecideCells(proposalId: string) {
+  const client = useQueryClient()
+  return useMutation({
+    mutationFn: (body: { version: number; cells: { cell: number; decision: Proposal['decisions'][number]; value?: number }[] }) =>
+      call(decideCells, { params: { proposalId }, body }),
+    onSuccess: (proposal) => {
+      client.setQueryData(proposalQueries.detail(proposalId).queryKey, proposal)
+    },
+  })
+}
+
+export function useCancelProposal(proposalId: string) {
+  const client = useQueryClient()
+  return useMutation({
+    mutationFn: () => call(cancelProposal, { params: { proposalId } }),
+    onSuccess: () => client.invalidateQueries({ queryKey: proposalQueries.all() }),
+  })
+}
+
+export function useMakeRevision(proposalId: string) {
+  const client = useQueryClient()
+  return useMutation({
+    mutationFn: (body: { version: number; note: string }) => call(makeRevision, { params: { proposalId }, body }),
+    onSuccess: () => client.invalidateQueries(),
+  })
+}

@@ -1,0 +1,81 @@
+/** Comments on a revision: what was said about which cell, settling it, and adding one. */
+import { useState } from 'react'
+import type { Comment } from '../../../shared/contract/reviews.ts'
+import { formatDateTime } from '../../lib/format.ts'
+import { Banner } from '../../ui/banner.tsx'
+import { Button } from '../../ui/button.tsx'
+import { TextArea } from '../../ui/field.tsx'
+import { Note } from '../../ui/note.tsx'
+import type { useReviewMoves } from './queries.ts'
+
+type Moves = ReturnType<typeof useReviewMoves>
+
+interface CommentsProps {
+  readonly comments: readonly Comment[]
+  readonly cellName: (cell: number) => string
+  readonly mayResolve: (comment: Comment) => boolean
+  readonly moves: Moves
+}
+
+export function Comments({ comments, cellName, mayResolve, moves }: CommentsProps) {
+  if (comments.length === 0) return <p className="text-ink-quiet">Nobody has commented yet.</p>
+  return (
+    <ul className="flex flex-col gap-5">
+      {comments.map((comment) => (
+        <li key={comment.id}>
+          <Note
+            icon="comment"
+            kind="says"
+            head={comment.author.name}
+            source={`${comment.cell === null ? 'On the whole revision' : cellName(comment.cell)}, ${formatDateTime(comment.at)} · ${comment.resolvedAt ? 'settled' : 'open'}`}
+          >
+            <p>“{comment.text}”</p>
+          </Note>
+          {comment.resolvedAt === null && mayResolve(comment) ? (
+            <Button
+              variant="word"
+              disabled={moves.resolve.isPending}
+              onClick={() => moves.resolve.mutate(comment.id)}
+              aria-label={`Settle the comment by ${comment.author.name}: ${comment.text}`}
+            >
+              Settle
+            </Button>
+          ) : null}
+        </li>
+      ))}
+    </ul>
+  )
+}
+
+interface AddCommentProps {
+  readonly cell: number | null
+  readonly cellName: (cell: number) => string
+  readonly moves: Moves
+}
+
+export function AddComment({ cell, cellName, moves }: AddCommentProps) {
+  const [text, setText] = useState('')
+  return (
+    <form
+      aria-label="Add a comment"
+      className="mt-5 max-w-(--measure)"
+      onSubmit={(event) => {
+        event.preventDefault()
+        moves.comment.mutate({ cell, text }, { onSuccess: () => setText('') })
+      }}
+    >
+      <TextArea
+        label={cell === null ? 'Comment on the whole revision' : `Comment on ${cellName(cell)}`}
+        hint={cell === null ? 'Select a cell in the table to speak of that cell' : 'Press Escape in the table to speak of the whole revision'}
+        rows={2}
+        maxLength={1000}
+        value={text}
+        onChange={(event) => setText(event.target.value)}
+      />
+      {moves.comment.isError ? <Banner title={moves.comment.error.message}>Your words are kept.</Banner> : null}
+      <Button className="mt-2" type="submit" disabled={text.trim() === '' || moves.comment.isPending}>
+        Add the comment
+      </Button>
+    </form>
+  )
+}

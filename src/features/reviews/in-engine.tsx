@@ -1,0 +1,35 @@
+/** Recording that a revision went into the controller; an unsigned one asks twice. */
+import { useState } from 'react'
+import type { Revision } from '../../../shared/contract/tables.ts'
+import { Banner } from '../../ui/banner.tsx'
+import { Button } from '../../ui/button.tsx'
+import { Confirm } from '../../ui/confirm.tsx'
+import { useMarkFlashed } from '../tables/queries.ts'
+
+export function InEngine({ revision }: { revision: Revision }) {
+  const [asking, setAsking] = useState(false)
+  const mark = useMarkFlashed(revision.id)
+  if (revision.flashed) return <p className="mt-4">This is what the controller holds.</p>
+  const signed = revision.state === 'signed'
+  return (
+    <div className="mt-4">
+      <Button onClick={() => setAsking(true)}>It is in the engine now</Button>
+      {mark.isError ? <Banner title={mark.error.message}>Nothing was recorded.</Banner> : null}
+      <Confirm
+        open={asking}
+        question={`Is revision ${revision.number} in the controller now?`}
+        consequence={
+          signed
+            ? 'Logs recorded from now on are compared with this table.'
+            : 'Nobody has signed this revision. An unproven table can ruin an engine. Logs recorded from now on are compared with it.'
+        }
+        verb="Record it"
+        onConfirm={() => {
+          setAsking(false)
+          mark.mutate()
+        }}
+        onClose={() => setAsking(false)}
+      />
+    </div>
+  )
+}
