@@ -65,7 +65,7 @@ async function openMailbox(deps: Deps): Promise<{ port: number; close: () => Pro
             recipient: to?.text ?? '',
             subject: parsed.subject ?? '',
             text: parsed.text ?? '',
-            html: parsed.html === false ? '' : parsed.html,
+            html: typeof parsed.html === 'string' ? parsed.html : '',
           })
           done()
         })
