@@ -14,7 +14,7 @@ export interface Crunch {
 
 export function openCrunch(): Crunch {
   const pool = new Piscina({
-    filename: new URL('./thread.ts', import.meta.url).href,
+    filename: new URL('./thread-entry.mjs', import.meta.url).href,
     minThreads: 0,
     maxThreads: 2,
     idleTimeout: 30_000,

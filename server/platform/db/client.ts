@@ -12,6 +12,7 @@ export function openPool(url: string, onError: (error: Error) => void): pg.Pool 
   const pool = new pg.Pool({ connectionString: url, max: 10 })
   // Without a listener a restart of the server would end the process.
   pool.on('error', onError)
+  pool.on('connect', (client) => client.on('error', onError))
   return pool
 }
 
