@@ -26,7 +26,8 @@ interface SignIn {
 }
 
 const syllables = ['ash', 'birch', 'cedar', 'elm', 'fern', 'hazel', 'larch', 'maple', 'oak', 'pine', 'rowan', 'willow']
-const newPassword = (): string => Array.from({ length: 3 }, () => `${syllables[randomInt(12)]}${randomInt(100, 1000)}`).join('-')
+const newPassword = (): string =>
+  Array.from({ length: 3 }, () => `${syllables[randomInt(12)]}${randomInt(100, 1000)}`).join('-')
 
 const crew: readonly (Omit<SignIn, 'password' | 'role'> & { roles: Role[] })[] = [
   { roles: ['tuner', 'admin'], name: 'Mara Lindqvist', email: 'mara@larkfield.example' },
@@ -36,7 +37,11 @@ const crew: readonly (Omit<SignIn, 'password' | 'role'> & { roles: Role[] })[] =
 
 async function people(deps: Deps, signIns: readonly SignIn[]): Promise<{ mara: Actor; tomId: string }> {
   const hashed = await Promise.all(
-    signIns.map(async ({ name, email, password }) => ({ name, email, passwordHash: await deps.crunch.hashPassword(password) })),
+    signIns.map(async ({ name, email, password }) => ({
+      name,
+      email,
+      passwordHash: await deps.crunch.hashPassword(password),
+    })),
   )
   return deps.db.transaction(async (tx) => {
     const { workshopId, personId } = await foundWorkshop(tx, 'Larkfield Workshop', hashed[0]!, crew[0]!.roles, false)
@@ -55,15 +60,31 @@ async function uploadDrive(deps: Deps, mara: Actor, vehicleId: string, vehicle: 
   const path = join(deps.config.uploadDir, `seed-${demo.seed}.csv`)
   await writeFile(path, csv)
   const name = `${demo.recordedOn}-${demo.title.toLowerCase().replace(/[^a-z]+/g, '-')}.csv`
-  return receiveLog(deps, mara, vehicleId, { name, path, bytes: Buffer.byteLength(csv) }, { title: demo.title, recordedOn: demo.recordedOn })
+  return receiveLog(
+    deps,
+    mara,
+    vehicleId,
+    { name, path, bytes: Buffer.byteLength(csv) },
+    { title: demo.title, recordedOn: demo.recordedOn },
+  )
 }
 
 async function seedVehicle(deps: Deps, mara: Actor, ownerIds: string[], vehicle: DemoVehicle): Promise<void> {
-  const { id, version } = await createVehicle(deps, mara, { name: vehicle.name, description: vehicle.description, sheet: vehicle.sheet })
+  const { id, version } = await createVehicle(deps, mara, {
+    name: vehicle.name,
+    description: vehicle.description,
+    sheet: vehicle.sheet,
+  })
   await changeVehicle(deps, mara, id, { version, ownerIds })
   const table = { origin: 'seed', note: 'The table it came with' } as const
   await bringTable(deps, mara, id, { ...table, kind: 've', text: asCsv(vehicle, vehicle.flashed), inEngine: true })
-  await bringTable(deps, mara, id, { ...table, kind: 'target', text: asCsv(vehicle, vehicle.target), note: '', inEngine: false })
+  await bringTable(deps, mara, id, {
+    ...table,
+    kind: 'target',
+    text: asCsv(vehicle, vehicle.target),
+    note: '',
+    inEngine: false,
+  })
   const logs = []
   for (const demo of vehicle.drives) logs.push(await uploadDrive(deps, mara, id, vehicle, demo))
   await drainQueue(deps, jobs)

@@ -4,4 +4,8 @@ import { installPackages } from './packages.mjs'
 import { root } from './setup.mjs'
 
 installPackages(root)
-process.exit(await runShown(process.execPath, ['--import', 'tsx', 'tests/bench/bench.ts', ...process.argv.slice(2)], { cwd: root }))
+process.exit(
+  await runShown(process.execPath, ['--import', 'tsx', 'tests/bench/bench.ts', ...process.argv.slice(2)], {
+    cwd: root,
+  }),
+)

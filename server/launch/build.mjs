@@ -14,12 +14,16 @@ function* filesBelow(path) {
 
 export function buildClient(root) {
   const hash = createHash('sha256')
-  for (const path of [...filesBelow(join(root, 'src')), ...filesBelow(join(root, 'shared'))]) hash.update(path).update(readFileSync(path))
+  for (const path of [...filesBelow(join(root, 'src')), ...filesBelow(join(root, 'shared'))])
+    hash.update(path).update(readFileSync(path))
   for (const name of ['index.html', 'vite.config.ts', 'package-lock.json']) hash.update(readFileSync(join(root, name)))
   const digest = hash.digest('hex')
   const stamp = join(root, 'dist', '.sources')
   if (existsSync(stamp) && readFileSync(stamp, 'utf8') === digest) return
   console.log('Building the pages…')
-  runQuietly(process.execPath, [join(root, 'node_modules', 'vite', 'bin', 'vite.js'), 'build', '--logLevel', 'warn'], { cwd: root, env: { ...process.env, NODE_ENV: 'production' } })
+  runQuietly(process.execPath, [join(root, 'node_modules', 'vite', 'bin', 'vite.js'), 'build', '--logLevel', 'warn'], {
+    cwd: root,
+    env: { ...process.env, NODE_ENV: 'production' },
+  })
   writeFileSync(stamp, digest)
 }

@@ -7,7 +7,9 @@ import { isRoot, runQuietly, succeeds } from './commands.mjs'
 const stampPath = (root) => join(root, 'node_modules', '.evenburn-lock')
 
 export function installPackages(root) {
-  const hash = createHash('sha256').update(readFileSync(join(root, 'package-lock.json'))).digest('hex')
+  const hash = createHash('sha256')
+    .update(readFileSync(join(root, 'package-lock.json')))
+    .digest('hex')
   const stamp = stampPath(root)
   if (existsSync(stamp) && readFileSync(stamp, 'utf8') === hash) return
   console.log('Installing packages…')

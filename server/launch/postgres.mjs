@@ -1,6 +1,19 @@
 /** A private PostgreSQL cluster in the data folder, on loopback, started when needed and stopped by whoever started it. */
 import { createHash, randomBytes } from 'node:crypto'
-import { closeSync, existsSync, mkdirSync, openSync, readdirSync, readFileSync, renameSync, rmSync, statSync, unlinkSync, writeFileSync, chownSync } from 'node:fs'
+import {
+  closeSync,
+  existsSync,
+  mkdirSync,
+  openSync,
+  readdirSync,
+  readFileSync,
+  renameSync,
+  rmSync,
+  statSync,
+  unlinkSync,
+  writeFileSync,
+  chownSync,
+} from 'node:fs'
 import { connect, createServer } from 'node:net'
 import { join } from 'node:path'
 import { isRoot, runQuietly, sleep, succeeds } from './commands.mjs'
@@ -107,7 +120,8 @@ async function withLock(path, work) {
       const pid = Number(readFileSync(path, 'utf8') || 0)
       const young = Date.now() - statSync(path).mtimeMs < 2000
       if (!young && !(pid > 0 && existsSync(`/proc/${pid}`))) unlinkSync(path)
-      else if (tries > 240) throw new Error(`Another start has been busy for two minutes. If there is none, remove ${path}.`)
+      else if (tries > 240)
+        throw new Error(`Another start has been busy for two minutes. If there is none, remove ${path}.`)
       await sleep(500)
     }
   }
@@ -128,7 +142,19 @@ function makeCluster(bin, cluster, password) {
   writeFileSync(passwordFile, password, { mode: 0o600 })
   giveToPostgres(passwordFile)
   try {
-    owned(join(bin, 'initdb'), ['-D', making, '-U', role, '-A', 'scram-sha-256', `--pwfile=${passwordFile}`, '--locale=C.UTF-8', '-E', 'UTF8', '--no-instructions'])
+    owned(join(bin, 'initdb'), [
+      '-D',
+      making,
+      '-U',
+      role,
+      '-A',
+      'scram-sha-256',
+      `--pwfile=${passwordFile}`,
+      '--locale=C.UTF-8',
+      '-E',
+      'UTF8',
+      '--no-instructions',
+    ])
   } catch (error) {
     if (String(error.message).includes('could not look up effective user ID')) {
       throw new Error('PostgreSQL needs a user with an entry in the password database; this process has none.')
@@ -145,7 +171,24 @@ async function startCluster(bin, cluster) {
     const port = tries === 0 && (await isFree(5432)) ? 5432 : await kernelPort()
     const options = `-p ${port} -c listen_addresses=127.0.0.1 -c unix_socket_directories=''`
     // The log is the server's; the pipe must not be ours, or we would wait for its end.
-    if (succeeds(...asOwner(join(bin, 'pg_ctl'), ['start', '-w', '-t', '60', '-D', cluster, '-l', `${cluster}.log`, '-o', options]), { cwd: '/', env })) return port
+    if (
+      succeeds(
+        ...asOwner(join(bin, 'pg_ctl'), [
+          'start',
+          '-w',
+          '-t',
+          '60',
+          '-D',
+          cluster,
+          '-l',
+          `${cluster}.log`,
+          '-o',
+          options,
+        ]),
+        { cwd: '/', env },
+      )
+    )
+      return port
     const port2 = await runningPort(bin, cluster)
     if (port2) return port2
   }
@@ -164,7 +207,9 @@ export async function ensurePostgres(dataDir, password) {
   if (isRoot && parent !== dataDir) giveToPostgres(parent)
   const other = readdirSync(parent).find((name) => /^pg\d+$/.test(name) && name !== `pg${major}`)
   if (other && !existsSync(cluster)) {
-    throw new Error(`The data folder holds a cluster of PostgreSQL ${other.slice(2)}, but the newest installed is ${major}. Install postgresql-${other.slice(2)}, or move the data by pg_dump.`)
+    throw new Error(
+      `The data folder holds a cluster of PostgreSQL ${other.slice(2)}, but the newest installed is ${major}. Install postgresql-${other.slice(2)}, or move the data by pg_dump.`,
+    )
   }
   return withLock(join(dataDir, 'postgres.lock'), async () => {
     if (!existsSync(join(cluster, 'PG_VERSION'))) {

@@ -27,7 +27,8 @@ function secrets() {
 /** @returns the server's admin URL and the environment that our processes share. */
 export async function prepare() {
   const [major, minor] = process.versions.node.split('.').map(Number)
-  if (major < 20 || (major === 20 && minor < 19)) throw new Error(`Node.js 20.19 or newer is needed; this is ${process.versions.node}.`)
+  if (major < 20 || (major === 20 && minor < 19))
+    throw new Error(`Node.js 20.19 or newer is needed; this is ${process.versions.node}.`)
   mkdirSync(dataDir, { recursive: true, mode: 0o755 })
   installPackages(root)
   const { session, postgres } = secrets()
@@ -51,9 +52,10 @@ export async function ensureDatabase(adminUrl, name, { fresh = false } = {}) {
   try {
     if (fresh) await client.query(`drop database if exists "${name}" with (force)`)
     const { rowCount } = await client.query('select 1 from pg_database where datname = $1', [name])
-    if (rowCount === 0) await client.query(`create database "${name}"`).catch((error) => {
-      if (error.code !== '42P04' && error.code !== '23505') throw error
-    })
+    if (rowCount === 0)
+      await client.query(`create database "${name}"`).catch((error) => {
+        if (error.code !== '42P04' && error.code !== '23505') throw error
+      })
   } finally {
     await client.end()
   }

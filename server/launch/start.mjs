@@ -26,7 +26,8 @@ function printSignIns() {
   const path = join(dataDir, 'demo.json')
   if (!existsSync(path)) return
   console.log('\nDemo sign-ins:')
-  for (const { role, email, password } of JSON.parse(readFileSync(path, 'utf8'))) console.log(`  ${role.padEnd(9)} ${email.padEnd(24)} ${password}`)
+  for (const { role, email, password } of JSON.parse(readFileSync(path, 'utf8')))
+    console.log(`  ${role.padEnd(9)} ${email.padEnd(24)} ${password}`)
 }
 
 async function main() {
@@ -60,7 +61,10 @@ async function main() {
     { name: 'worker', args: [...watch, 'server/worker.ts'] },
   ]
   if (dev) list.push({ name: 'vite', args: ['node_modules/vite/bin/vite.js', '--port', port, '--strictPort'] })
-  const children = keepRunning(list, { cwd: root, env: dev ? { ...env, EVENBURN_API: `http://127.0.0.1:${webPort}` } : env })
+  const children = keepRunning(list, {
+    cwd: root,
+    env: dev ? { ...env, EVENBURN_API: `http://127.0.0.1:${webPort}` } : env,
+  })
   stopAll = async () => {
     await children.stop()
     server.stop()

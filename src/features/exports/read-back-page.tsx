@@ -43,7 +43,9 @@ export default function ReadBackPage() {
         title="The table"
         aside={
           <Note icon="info" head="Nothing is stored">
-            <p>The table is only compared. Axes in the first row and column, as the export writes them; either way round.</p>
+            <p>
+              The table is only compared. Axes in the first row and column, as the export writes them; either way round.
+            </p>
           </Note>
         }
       >
@@ -53,7 +55,13 @@ export default function ReadBackPage() {
             check.mutate()
           }}
         >
-          <TextArea label="Cells" rows={10} value={text} onChange={(event) => setText(event.target.value)} hint="As copied from a spreadsheet, or as CSV" />
+          <TextArea
+            label="Cells"
+            rows={10}
+            value={text}
+            onChange={(event) => setText(event.target.value)}
+            hint="As copied from a spreadsheet, or as CSV"
+          />
           <label className="mt-3 block">
             <span className="font-semibold">Or a file</span>
             <input
@@ -77,12 +85,16 @@ export default function ReadBackPage() {
           <ul className="columns-2 gap-8">
             {result.closest.differ.slice(0, 60).map((cell) => (
               <li key={cell.cell}>
-                cell {cell.cell + 1}: {formatNumber(cell.expected, 2)} expected, <b>{formatNumber(cell.found, 2)}</b> found
+                cell {cell.cell + 1}: {formatNumber(cell.expected, 2)} expected, <b>{formatNumber(cell.found, 2)}</b>{' '}
+                found
               </li>
             ))}
           </ul>
           <p className="mt-3">
-            <Link className="text-copper underline underline-offset-3" to={paths.revision(vehicleId, result.closest.id)}>
+            <Link
+              className="text-copper underline underline-offset-3"
+              to={paths.revision(vehicleId, result.closest.id)}
+            >
               Open revision {result.closest.number}
             </Link>
           </p>

@@ -64,8 +64,13 @@ export function useLogChanges(logId: string) {
   const onSuccess = () => client.invalidateQueries({ queryKey: logQueries.all() })
   return {
     change: useMutation({
-      mutationFn: (body: { version: number; title?: string; note?: string; recordedOn?: string | null; flashedRevisionId?: string | null }) =>
-        call(changeLog, { params: { logId }, body }),
+      mutationFn: (body: {
+        version: number
+        title?: string
+        note?: string
+        recordedOn?: string | null
+        flashedRevisionId?: string | null
+      }) => call(changeLog, { params: { logId }, body }),
       onSuccess,
     }),
     map: useMutation({

@@ -5,7 +5,15 @@ import { formatNumber, formatSigned } from '../../lib/format.ts'
 import { Button } from '../../ui/button.tsx'
 import { Facts } from '../../ui/facts.tsx'
 import { Status } from '../../ui/status.tsx'
-import { cellState, changePct, readNumber, takenValue, type CellChange, type CellState, type Decided } from './decisions.ts'
+import {
+  cellState,
+  changePct,
+  readNumber,
+  takenValue,
+  type CellChange,
+  type CellState,
+  type Decided,
+} from './decisions.ts'
 
 interface CellCardProps {
   readonly decided: Decided
@@ -56,12 +64,16 @@ export function CellCard({ decided, cell, cells, mayDecide, handInput, onDecide 
         </p>
         <ArrowRight aria-hidden size={16} className="mb-2.5 text-ink-faint" />
         <p>
-          <span className="text-small text-ink-quiet">{state === 'open' || state === 'held' ? 'Proposed' : 'Taken'}</span>
+          <span className="text-small text-ink-quiet">
+            {state === 'open' || state === 'held' ? 'Proposed' : 'Taken'}
+          </span>
           <b className="block text-title font-normal">{formatNumber(shown, 1)}</b>
         </p>
         <p className="ml-auto text-right">
           <span className="text-small text-ink-quiet">Change</span>
-          <b className={`block text-title font-semibold ${change < 0 ? 'text-slate' : change > 0 ? 'text-copper' : ''}`}>
+          <b
+            className={`block text-title font-semibold ${change < 0 ? 'text-slate' : change > 0 ? 'text-copper' : ''}`}
+          >
             {formatSigned(change, 1)}
             <span className="text-note font-normal">&thinsp;%</span>
           </b>
@@ -71,7 +83,8 @@ export function CellCard({ decided, cell, cells, mayDecide, handInput, onDecide 
         items={[
           {
             label: 'Uncertainty',
-            value: sigma === null || sigma === undefined ? 'cannot tell' : `±${formatNumber((2 * sigma * shown) / 100, 1)}`,
+            value:
+              sigma === null || sigma === undefined ? 'cannot tell' : `±${formatNumber((2 * sigma * shown) / 100, 1)}`,
             unit: sigma === null || sigma === undefined ? '' : 'VE, 95 %',
           },
           { label: 'Evidence', value: formatNumber(surface.evidenceS[cell] ?? 0, 1), unit: 's' },
@@ -81,7 +94,9 @@ export function CellCard({ decided, cell, cells, mayDecide, handInput, onDecide 
         ]}
       />
       <div className="mt-3.5 mb-4 text-ink-quiet">
-        {cells.length > 1 ? <p>{formatNumber(cells.length)} cells are selected; a decision goes to all of them.</p> : null}
+        {cells.length > 1 ? (
+          <p>{formatNumber(cells.length)} cells are selected; a decision goes to all of them.</p>
+        ) : null}
         {state === 'none' ? <p>No log has been here. The value is the one the table came with.</p> : null}
         {held ? (
           <p className="mt-1">
@@ -133,7 +148,12 @@ function DecisionButtons({ cells, state, shown, decide, handInput, onDecide }: D
   return (
     <>
       <div className="grid grid-cols-2 gap-2">
-        <Button variant="solid" kbd="A" disabled={state === 'none' && cells.length === 1} onClick={() => decide('accepted')}>
+        <Button
+          variant="solid"
+          kbd="A"
+          disabled={state === 'none' && cells.length === 1}
+          onClick={() => decide('accepted')}
+        >
           Accept
         </Button>
         <Button kbd="K" onClick={() => decide('kept')}>

@@ -42,8 +42,10 @@ export function useRequestProposal(vehicleId: string) {
 export function useDecideCells(proposalId: string) {
   const client = useQueryClient()
   return useMutation({
-    mutationFn: (body: { version: number; cells: { cell: number; decision: Proposal['decisions'][number]; value?: number }[] }) =>
-      call(decideCells, { params: { proposalId }, body }),
+    mutationFn: (body: {
+      version: number
+      cells: { cell: number; decision: Proposal['decisions'][number]; value?: number }[]
+    }) => call(decideCells, { params: { proposalId }, body }),
     onSuccess: (proposal) => {
       client.setQueryData(proposalQueries.detail(proposalId).queryKey, proposal)
     },

@@ -8,7 +8,7 @@ import { paths } from '../../lib/paths.ts'
 import { useCan } from '../../lib/session.ts'
 import { Banner } from '../../ui/banner.tsx'
 import { Button, ButtonLink } from '../../ui/button.tsx'
-import { Checkbox } from '../../ui/checkbox.tsx'
+import { Checkbox } from '../../ui/field.tsx'
 import { Empty } from '../../ui/empty.tsx'
 import { Entry, PageHead } from '../../ui/leaf.tsx'
 import { Loading } from '../../ui/loading.tsx'
@@ -29,7 +29,11 @@ export function WorkbenchStart({ vehicleId }: { vehicleId: string }) {
     return (
       <Empty
         title={kinds.has('ve') ? 'The vehicle has no target table yet' : 'The vehicle has no fuel table yet'}
-        action={<ButtonLink variant="solid" to={paths.tables(vehicleId)}>Bring the table</ButtonLink>}
+        action={
+          <ButtonLink variant="solid" to={paths.tables(vehicleId)}>
+            Bring the table
+          </ButtonLink>
+        }
       >
         Learning compares what the wideband measured with what was asked for, so it needs both tables.
       </Empty>
@@ -39,7 +43,11 @@ export function WorkbenchStart({ vehicleId }: { vehicleId: string }) {
     return (
       <Empty
         title="No log is ready to learn from"
-        action={<ButtonLink variant="solid" to={paths.logs(vehicleId)}>Upload a log</ButtonLink>}
+        action={
+          <ButtonLink variant="solid" to={paths.logs(vehicleId)}>
+            Upload a log
+          </ButtonLink>
+        }
       >
         Any CSV with engine speed, manifold pressure and lambda will do.
       </Empty>
@@ -65,13 +73,19 @@ function ChooseLogs({ vehicleId, logs, mayLearn }: { vehicleId: string; logs: re
         lead="Each log is compared with the table that was in the engine when it was recorded. Logs add up."
         actions={
           mayLearn ? (
-            <Button variant="solid" disabled={chosen.size === 0 || request.isPending} onClick={() => void learn().catch(() => undefined)}>
+            <Button
+              variant="solid"
+              disabled={chosen.size === 0 || request.isPending}
+              onClick={() => void learn().catch(() => undefined)}
+            >
               Learn from {formatNumber(chosen.size)} {chosen.size === 1 ? 'log' : 'logs'}
             </Button>
           ) : null
         }
       />
-      {request.isError ? <Banner title={request.error.message}>Nothing was started; your choice is kept.</Banner> : null}
+      {request.isError ? (
+        <Banner title={request.error.message}>Nothing was started; your choice is kept.</Banner>
+      ) : null}
       <Entry
         title="Logs"
         aside={

@@ -45,7 +45,11 @@ export function WorkbenchWaiting({ proposal, vehicleId }: { proposal: Proposal; 
   }
   return (
     <>
-      <PageHead folio={`Proposal ${proposal.number}`} title={title[proposal.state] ?? 'This proposal is closed'} actions={again} />
+      <PageHead
+        folio={`Proposal ${proposal.number}`}
+        title={title[proposal.state] ?? 'This proposal is closed'}
+        actions={again}
+      />
       {proposal.trouble ? (
         <Banner title={proposal.trouble}>Nothing was changed. The logs and the table are as they were.</Banner>
       ) : null}

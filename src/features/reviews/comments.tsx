@@ -66,7 +66,11 @@ export function AddComment({ cell, cellName, moves }: AddCommentProps) {
     >
       <TextArea
         label={cell === null ? 'Comment on the whole revision' : `Comment on ${cellName(cell)}`}
-        hint={cell === null ? 'Select a cell in the table to speak of that cell' : 'Press Escape in the table to speak of the whole revision'}
+        hint={
+          cell === null
+            ? 'Select a cell in the table to speak of that cell'
+            : 'Press Escape in the table to speak of the whole revision'
+        }
         rows={2}
         maxLength={1000}
         value={text}

@@ -2,7 +2,7 @@
 import { useState } from 'react'
 import type { Revision } from '../../../shared/contract/tables.ts'
 import { Note } from '../../ui/note.tsx'
-import { Select } from '../../ui/select.tsx'
+import { Select } from '../../ui/field.tsx'
 
 export function ExportLinks({ revision }: { revision: Revision }) {
   const [axes, setAxes] = useState('rpm-across')

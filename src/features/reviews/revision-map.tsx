@@ -12,7 +12,13 @@ interface RevisionMapProps {
   readonly cellName: (cell: number) => string
 }
 
-const marks: Record<string, HeatmapMark> = { held: 'held', pinned: 'pinned', kept: 'kept', 'by-hand': 'by-hand', open: 'open' }
+const marks: Record<string, HeatmapMark> = {
+  held: 'held',
+  pinned: 'pinned',
+  kept: 'kept',
+  'by-hand': 'by-hand',
+  open: 'open',
+}
 
 export function RevisionMap({ revision, cell, onSelect, cellName }: RevisionMapProps) {
   const { parentValues, provenance, kind } = revision
@@ -28,7 +34,11 @@ export function RevisionMap({ revision, cell, onSelect, cellName }: RevisionMapP
   return (
     <>
       {parentValues ? (
-        <button type="button" className="mb-3 cursor-pointer text-copper underline underline-offset-3" onClick={() => setAsChange(!asChange)}>
+        <button
+          type="button"
+          className="mb-3 cursor-pointer text-copper underline underline-offset-3"
+          onClick={() => setAsChange(!asChange)}
+        >
           {change ? 'Show the values' : 'Show the change'}
         </button>
       ) : null}
@@ -42,7 +52,9 @@ export function RevisionMap({ revision, cell, onSelect, cellName }: RevisionMapP
         mark={(index) => (provenance ? (marks[provenance.decision[index] ?? 'none'] ?? null) : null)}
         selection={cell === null ? null : { anchor: cell, focus: cell }}
         onSelect={(selection) => onSelect(selection?.focus ?? null)}
-        cellLabel={(index) => `${cellName(index)}: ${format(values[index] ?? Number.NaN)}${none(index) ? ', no evidence' : ''}`}
+        cellLabel={(index) =>
+          `${cellName(index)}: ${format(values[index] ?? Number.NaN)}${none(index) ? ', no evidence' : ''}`
+        }
         snug
       />
       <Legend view={view} unit={change ? '%, minus is leaner, plus is richer' : kind === 've' ? 'VE, %' : 'lambda'} />

@@ -57,7 +57,9 @@ export default function RevisionPage() {
   if (revision.isPending || review.isPending) return <Loading what="Reading the revision" />
   const problem = revision.error ?? review.error
   if (problem || !revision.data || !review.data) {
-    return <Banner title={problem?.message ?? 'The revision could not be read'}>Go back to the list of revisions.</Banner>
+    return (
+      <Banner title={problem?.message ?? 'The revision could not be read'}>Go back to the list of revisions.</Banner>
+    )
   }
   return <RevisionView vehicleId={vehicleId} revision={revision.data} review={review.data} />
 }
@@ -101,15 +103,22 @@ function RevisionView({ vehicleId, revision, review }: { vehicleId: string; revi
             { label: 'Made', value: formatDateTime(revision.createdAt) },
             {
               label: 'Learned from',
-              value: revision.logs.length === 0 ? 'no log' : `Logs ${revision.logs.map((log) => log.number).join(', ')}`,
+              value:
+                revision.logs.length === 0 ? 'no log' : `Logs ${revision.logs.map((log) => log.number).join(', ')}`,
             },
-            { label: 'Checksum', value: `${revision.checksum.slice(0, 4)} ${revision.checksum.slice(4, 8)} … ${revision.checksum.slice(-4)}` },
+            {
+              label: 'Checksum',
+              value: `${revision.checksum.slice(0, 4)} ${revision.checksum.slice(4, 8)} … ${revision.checksum.slice(-4)}`,
+            },
             ...(revision.note ? [{ label: 'Note', value: `“${revision.note}”` }] : []),
           ]}
         />
         {revision.proposalId && mayEdit ? (
           <p className="mt-3">
-            <Link className="text-copper underline underline-offset-3" to={paths.proposal(vehicleId, revision.proposalId)}>
+            <Link
+              className="text-copper underline underline-offset-3"
+              to={paths.proposal(vehicleId, revision.proposalId)}
+            >
               See the proposal it was made from
             </Link>
           </p>
@@ -170,7 +179,12 @@ function RevisionView({ vehicleId, revision, review }: { vehicleId: string; revi
 function LookFirst({ review, cellName }: { review: Review; cellName: (cell: number) => string }) {
   return (
     <Entry title="Look at these first" note="By risk: high load, then size, then hand">
-      <Ledger caption="Cells that deserve a look first" head={['Cell', 'Why it is here', 'Before', 'After', 'Change', '±, 95 %', 'Evidence']} numeric={[2, 3, 4, 5, 6]} stack>
+      <Ledger
+        caption="Cells that deserve a look first"
+        head={['Cell', 'Why it is here', 'Before', 'After', 'Change', '±, 95 %', 'Evidence']}
+        numeric={[2, 3, 4, 5, 6]}
+        stack
+      >
         {review.lookFirst.map((entry) => (
           <tr key={entry.cell}>
             <th scope="row">{cellName(entry.cell)}</th>

@@ -61,7 +61,13 @@ export default function RevisionsPage() {
       <Leaf>
         <Empty
           title={mayBring ? 'There is no table yet' : 'Nothing has been signed yet'}
-          action={mayBring ? <ButtonLink variant="solid" to={paths.tables(vehicleId)}>Bring the table</ButtonLink> : null}
+          action={
+            mayBring ? (
+              <ButtonLink variant="solid" to={paths.tables(vehicleId)}>
+                Bring the table
+              </ButtonLink>
+            ) : null
+          }
         >
           {mayBring
             ? 'Upload or paste the fuel table that is in the controller now; it becomes revision 1.'
@@ -73,12 +79,20 @@ export default function RevisionsPage() {
   const shown = all.filter((revision) => revision.kind === kind)
   return (
     <Leaf>
-      <PageHead folio="Revisions" title={historySentence(all)} lead="A signed revision never changes; a change makes a new one." />
+      <PageHead
+        folio="Revisions"
+        title={historySentence(all)}
+        lead="A signed revision never changes; a change makes a new one."
+      />
       <Entry
         title={kind === 've' ? 'Fuel table' : 'Target table'}
         note={`${formatNumber(shown.length)} ${shown.length === 1 ? 'revision' : 'revisions'}`}
         end={
-          <button type="button" className="cursor-pointer text-copper underline underline-offset-3" onClick={() => setKind(kind === 've' ? 'target' : 've')}>
+          <button
+            type="button"
+            className="cursor-pointer text-copper underline underline-offset-3"
+            onClick={() => setKind(kind === 've' ? 'target' : 've')}
+          >
             {kind === 've' ? 'Show the target table' : 'Show the fuel table'}
           </button>
         }
@@ -93,7 +107,11 @@ export default function RevisionsPage() {
           </Note>
         }
       >
-        <Ledger caption="Revisions, newest first" head={['Date', 'Revision', 'What it says', 'By', 'Checksum', 'State']} stack>
+        <Ledger
+          caption="Revisions, newest first"
+          head={['Date', 'Revision', 'What it says', 'By', 'Checksum', 'State']}
+          stack
+        >
           {shown.map((revision) => (
             <tr key={revision.id}>
               <td>{formatDate(revision.createdAt)}</td>

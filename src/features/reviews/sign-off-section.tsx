@@ -6,7 +6,7 @@ import { formatDateTime } from '../../lib/format.ts'
 import { useMe } from '../../lib/session.ts'
 import { Banner } from '../../ui/banner.tsx'
 import { Button } from '../../ui/button.tsx'
-import { Checkbox } from '../../ui/checkbox.tsx'
+import { Checkbox } from '../../ui/field.tsx'
 import { Confirm } from '../../ui/confirm.tsx'
 import { Field, TextArea } from '../../ui/field.tsx'
 import type { useReviewMoves } from './queries.ts'
@@ -65,7 +65,13 @@ function Submit({ revision, moves }: SignOffProps) {
   return (
     <div className="mt-5">
       <div className="max-w-(--measure)">
-        <TextArea label="Words to the reviewer" rows={2} maxLength={500} value={note} onChange={(event) => setNote(event.target.value)} />
+        <TextArea
+          label="Words to the reviewer"
+          rows={2}
+          maxLength={500}
+          value={note}
+          onChange={(event) => setNote(event.target.value)}
+        />
       </div>
       {moves.submit.isError ? <Banner title={moves.submit.error.message}>The draft is kept.</Banner> : null}
       <Button className="mt-3" variant="solid" onClick={() => setAsking(true)}>
@@ -103,7 +109,11 @@ function Decide({ revision, review, moves }: SignOffProps) {
         </p>
       ) : null}
       <Checkbox
-        label={count === 0 ? 'I have looked at the whole table.' : `I have looked at the ${count} changes above and at the whole table.`}
+        label={
+          count === 0
+            ? 'I have looked at the whole table.'
+            : `I have looked at the ${count} changes above and at the whole table.`
+        }
         checked={looked}
         onChange={(event) => setLooked(event.target.checked)}
       />
@@ -113,8 +123,21 @@ function Decide({ revision, review, moves }: SignOffProps) {
         onChange={(event) => setCautions(event.target.checked)}
       />
       <div className="mt-4 grid gap-4">
-        <Field label="Type your name to sign" hint={`As it stands in the workshop: ${me.person.name}`} autoComplete="off" value={name} onChange={(event) => setName(event.target.value)} />
-        <TextArea label="Words that go with it" hint="Needed when you send it back" rows={2} maxLength={500} value={note} onChange={(event) => setNote(event.target.value)} />
+        <Field
+          label="Type your name to sign"
+          hint={`As it stands in the workshop: ${me.person.name}`}
+          autoComplete="off"
+          value={name}
+          onChange={(event) => setName(event.target.value)}
+        />
+        <TextArea
+          label="Words that go with it"
+          hint="Needed when you send it back"
+          rows={2}
+          maxLength={500}
+          value={note}
+          onChange={(event) => setNote(event.target.value)}
+        />
       </div>
       {problem ? <Banner title={problem.message}>Nothing was signed; what you wrote is kept.</Banner> : null}
       <div className="mt-4 flex flex-wrap items-center gap-3">
@@ -125,12 +148,18 @@ function Decide({ revision, review, moves }: SignOffProps) {
         >
           Sign revision {revision.number}
         </Button>
-        <Button disabled={note.trim() === '' || !review.may.sendBack || moves.sendBack.isPending} onClick={() => moves.sendBack.mutate(note)}>
+        <Button
+          disabled={note.trim() === '' || !review.may.sendBack || moves.sendBack.isPending}
+          onClick={() => moves.sendBack.mutate(note)}
+        >
           Send back with words
         </Button>
       </div>
       <p className="mt-2 text-ink-quiet">
-        {review.whyNotSign ?? (ready ? `Signing closes revision ${revision.number} for good.` : 'Tick both lines and type your name to sign; write what should change to send it back.')}
+        {review.whyNotSign ??
+          (ready
+            ? `Signing closes revision ${revision.number} for good.`
+            : 'Tick both lines and type your name to sign; write what should change to send it back.')}
       </p>
     </div>
   )

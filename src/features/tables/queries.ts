@@ -33,8 +33,13 @@ export function usePreviewTable(vehicleId: string) {
 export function useBringTable(vehicleId: string) {
   const client = useQueryClient()
   return useMutation({
-    mutationFn: (body: { kind: TableKind; text: string; origin: 'upload' | 'paste'; note: string; inEngine: boolean }) =>
-      call(bringTable, { params: { vehicleId }, body }),
+    mutationFn: (body: {
+      kind: TableKind
+      text: string
+      origin: 'upload' | 'paste'
+      note: string
+      inEngine: boolean
+    }) => call(bringTable, { params: { vehicleId }, body }),
     onSuccess: () => client.invalidateQueries(),
   })
 }

@@ -27,7 +27,8 @@ export const vehicleQueries = {
 export function useCreateVehicle() {
   const client = useQueryClient()
   return useMutation({
-    mutationFn: (body: { name: string; description: string; sheet?: EngineSheetInput }) => call(createVehicle, { body }),
+    mutationFn: (body: { name: string; description: string; sheet?: EngineSheetInput }) =>
+      call(createVehicle, { body }),
     onSuccess: () => client.invalidateQueries({ queryKey: vehicleQueries.all() }),
   })
 }
@@ -35,8 +36,13 @@ export function useCreateVehicle() {
 export function useChangeVehicle(vehicleId: string) {
   const client = useQueryClient()
   return useMutation({
-    mutationFn: (body: { version: number; name?: string; description?: string; archived?: boolean; ownerIds?: string[] }) =>
-      call(changeVehicle, { params: { vehicleId }, body }),
+    mutationFn: (body: {
+      version: number
+      name?: string
+      description?: string
+      archived?: boolean
+      ownerIds?: string[]
+    }) => call(changeVehicle, { params: { vehicleId }, body }),
     onSuccess: () => client.invalidateQueries({ queryKey: vehicleQueries.all() }),
   })
 }

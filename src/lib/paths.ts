@@ -1,0 +1,26 @@
+/** Every address of the pages, built by a function. */
+const vehicle = (vehicleId: string) => `/vehicles/${vehicleId}`
+
+export const paths = {
+  bench: () => '/',
+  signIn: () => '/sign-in',
+  setup: () => '/setup',
+  reset: () => '/reset',
+  people: () => '/people',
+  audit: () => '/audit',
+  account: () => '/account',
+  mails: () => '/demo/mails',
+  vehicles: () => '/vehicles',
+  newVehicle: () => '/vehicles/new',
+  vehicle,
+  engineSheet: (vehicleId: string) => `${vehicle(vehicleId)}/engine-sheet`,
+  tables: (vehicleId: string) => `${vehicle(vehicleId)}/tables`,
+  logs: (vehicleId: string) => `${vehicle(vehicleId)}/logs`,
+  log: (vehicleId: string, logId: string) => `${vehicle(vehicleId)}/logs/${logId}`,
+  workbench: (vehicleId: string) => `${vehicle(vehicleId)}/workbench`,
+  workbenchStart: (vehicleId: string) => `${vehicle(vehicleId)}/workbench/new`,
+  proposal: (vehicleId: string, proposalId: string) => `${vehicle(vehicleId)}/workbench/${proposalId}`,
+  revisions: (vehicleId: string) => `${vehicle(vehicleId)}/revisions`,
+  revision: (vehicleId: string, revisionId: string) => `${vehicle(vehicleId)}/revisions/${revisionId}`,
+  readBack: (vehicleId: string) => `${vehicle(vehicleId)}/read-back`,
+}

@@ -1,0 +1,102 @@
+/** One channel over time: the band between lowest and highest readings, and the target where there is one. */
+import { Axis, DataProvider, Grid, LineSeries, XYChart, buildChartTheme } from '@visx/xychart'
+import { formatClock } from '../../lib/format.ts'
+import type { Trace } from '../../../shared/contract/logs.ts'
+
+interface Point {
+  readonly t: number
+  readonly y: number
+}
+
+const theme = buildChartTheme({
+  backgroundColor: 'transparent',
+  colors: ['var(--color-ink)', 'var(--color-copper)'],
+  gridColor: 'var(--color-rule)',
+  gridColorDark: 'var(--color-rule-strong)',
+  tickLength: 4,
+  svgLabelSmall: { fill: 'var(--color-ink-quiet)', fontSize: 13 },
+})
+
+/** Every stretch gives its lowest and highest reading in turn, so that no spike is lost between pixels. */
+export function pointsOf(trace: Trace): Point[][] {
+  const runs: Point[][] = []
+  let run: Point[] = []
+  trace.timeS.forEach((t, i) => {
+    const low = trace.low[i] ?? null
+    const high = trace.high[i] ?? null
+    if (low === null || high === null) {
+      if (run.length > 0) runs.push(run)
+      run = []
+      return
+    }
+    run.push({ t, y: low })
+    if (high !== low) run.push({ t, y: high })
+  })
+  if (run.length > 0) runs.push(run)
+  return runs
+}
+
+interface TracePanelProps {
+  readonly name: string
+  readonly trace: Trace
+  readonly second?: Trace | undefined
+  readonly width: number
+  readonly height?: number
+}
+
+export function TracePanel({ name, trace, second, width, height = 120 }: TracePanelProps) {
+  const from = trace.timeS[0] ?? 0
+  const to = trace.timeS.at(-1) ?? 1
+  const values = [...trace.low, ...trace.high].filter((value) => value !== null)
+  const summary =
+    values.length === 0 ? 'no reading' : `from ${Math.min(...values)} to ${Math.max(...values)} ${trace.unit}`
+  return (
+    <figure className="chart border-b border-rule">
+      <figcaption className="flex justify-between text-small">
+        <b>{name}</b>
+        <span className="text-ink-faint">{trace.unit}</span>
+      </figcaption>
+      <DataProvider
+        theme={theme}
+        xScale={{ type: 'linear', domain: [from, to], zero: false }}
+        yScale={{ type: 'linear', zero: false, nice: true }}
+      >
+        <XYChart
+          width={width}
+          height={height}
+          margin={{ top: 6, right: 8, bottom: 24, left: 46 }}
+          accessibilityLabel={`${name} over time, ${summary}`}
+        >
+          <Grid columns={false} numTicks={3} />
+          <Axis orientation="left" numTicks={3} hideAxisLine />
+          <Axis orientation="bottom" numTicks={width < 500 ? 4 : 8} tickFormat={(t: number) => formatClock(t)} />
+          {pointsOf(trace).map((run, i) => (
+            <LineSeries
+              key={run[0]!.t}
+              dataKey={`${name} ${i}`}
+              data={run}
+              xAccessor={(p) => p.t}
+              yAccessor={(p) => p.y}
+              stroke="var(--color-ink)"
+              strokeWidth={1.2}
+            />
+          ))}
+          {second
+            ? pointsOf(second).map((run, i) => (
+                <LineSeries
+                  key={run[0]!.t}
+                  dataKey={`target ${i}`}
+                  data={run}
+                  xAccessor={(p) => p.t}
+                  yAccessor={(p) => p.y}
+                  stroke="var(--color-copper)"
+                  strokeWidth={1.4}
+                  strokeDasharray="5 3"
+                />
+              ))
+            : null}
+        </XYChart>
+      </DataProvider>
+    </figure>
+  )
+}
