@@ -61,10 +61,8 @@ function judge(channel: ChannelName, values: ArrayLike<number>, spread: Spread, 
   if (channel === 'battery' && low < 10.5) return ['caution', `Sags to ${low.toFixed(1)} V.`]
   if (channel === 'tp' && low > 1.5) return ['caution', `Rests at ${low.toFixed(1)}, not 0.`]
   if (channel === 'tp' && high < 25) return ['caution', `Never opens beyond ${high.toFixed(0)} %.`]
-  return [
-    'sound',
-    channel === 'time' ? `${facts.rateHz.toFixed(facts.rateHz < 5 ? 1 : 0)} rows a second.` : 'Moves as it should.',
-  ]
+  if (channel === 'time') return ['sound', `${facts.rateHz.toFixed(facts.rateHz < 5 ? 1 : 0)} rows a second.`]
+  return ['sound', low === high ? `Steady at ${low.toPrecision(3)} throughout.` : 'Moves as it should.']
 }
 
 /** Health of every channel, the worst first; channels that the file lacks come last. */

@@ -1,0 +1,39 @@
+/** Three kinds of tests: pure ones, the API on a real PostgreSQL, and pages in jsdom. */
+import react from '@vitejs/plugin-react'
+import { defineConfig } from 'vitest/config'
+
+export default defineConfig({
+  test: {
+    projects: [
+      {
+        test: {
+          name: 'unit',
+          environment: 'node',
+          include: ['tests/unit/**/*.test.ts', 'tests/architecture.test.ts'],
+          setupFiles: ['tests/support/console-guard.ts'],
+        },
+      },
+      {
+        test: {
+          name: 'api',
+          environment: 'node',
+          include: ['tests/api/**/*.test.ts'],
+          globalSetup: ['tests/support/template-database.ts'],
+          setupFiles: ['tests/support/console-guard.ts'],
+          testTimeout: 60_000,
+          hookTimeout: 60_000,
+          maxWorkers: 2,
+        },
+      },
+      {
+        plugins: [react()],
+        test: {
+          name: 'ui',
+          environment: 'jsdom',
+          include: ['tests/ui/**/*.test.tsx'],
+          setupFiles: ['tests/support/console-guard.ts', 'tests/support/ui-setup.ts'],
+        },
+      },
+    ],
+  },
+})
