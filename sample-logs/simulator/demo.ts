@@ -31,7 +31,12 @@ export interface DemoVehicle {
 }
 
 /** A table set by hand: the truth, off by a factor that grows and shrinks in plateaus, in whole and half numbers. */
-function handMade(engine: SimulatedEngine, grid: Grid, seed: number, offPct: (rpm: number, mapKpa: number) => number): Float64Array {
+function handMade(
+  engine: SimulatedEngine,
+  grid: Grid,
+  seed: number,
+  offPct: (rpm: number, mapKpa: number) => number,
+): Float64Array {
   const random = seeded(seed)
   return trueTable(engine, grid).map((ve, i) => {
     const rpm = grid.rpm[i % grid.rpm.length]!
@@ -86,7 +91,8 @@ const turboGrid: Grid = {
 
 export const flatbed: DemoVehicle = {
   name: 'Nursery flatbed',
-  description: '1984, 3.0-litre straight six. Drinks fuel, hunts at idle, stalls when it rolls to a stop with the trailer on.',
+  description:
+    '1984, 3.0-litre straight six. Drinks fuel, hunts at idle, stalls when it rolls to a stop with the trailer on.',
   sheet: {
     displacementL: 2.983,
     cylinders: 6,
@@ -103,13 +109,55 @@ export const flatbed: DemoVehicle = {
   },
   engine: flatbedEngine,
   grid: flatbedGrid,
-  flashed: handMade(flatbedEngine, flatbedGrid, 84, (rpm, mapKpa) => (mapKpa > 85 ? 4 : rpm < 1300 ? 15 : 9) - (rpm > 2800 && mapKpa > 90 ? 7 : 0)),
+  flashed: handMade(
+    flatbedEngine,
+    flatbedGrid,
+    84,
+    (rpm, mapKpa) => (mapKpa > 85 ? 4 : rpm < 1300 ? 15 : 9) - (rpm > 2800 && mapKpa > 90 ? 7 : 0),
+  ),
   target: targetsOf(flatbedGrid, (rpm, mapKpa) => (mapKpa >= 88 ? 0.88 : mapKpa >= 74 ? 0.94 : rpm < 1000 ? 0.97 : 1)),
   drives: [
-    { title: 'Cold start and idle in the yard', note: '', recordedOn: '2026-10-09', habit: 'yard', seconds: 420, seed: 11, startC: 14, hunting: 140 },
-    { title: 'Dry, level road', note: '', recordedOn: '2026-10-09', habit: 'road', seconds: 900, seed: 12, startC: 66, hunting: 120 },
-    { title: 'Dry, two long hills', note: '', recordedOn: '2026-10-11', habit: 'hills', seconds: 1080, seed: 13, startC: 70, hunting: 120 },
-    { title: 'Wet road, trailer on', note: 'It stalled rolling up to the packing shed again.', recordedOn: '2026-10-14', habit: 'road', seconds: 900, seed: 14, startC: 40, hunting: 140, dead: 'iat' },
+    {
+      title: 'Cold start and idle in the yard',
+      note: '',
+      recordedOn: '2026-10-09',
+      habit: 'yard',
+      seconds: 420,
+      seed: 11,
+      startC: 14,
+      hunting: 140,
+    },
+    {
+      title: 'Dry, level road',
+      note: '',
+      recordedOn: '2026-10-09',
+      habit: 'road',
+      seconds: 900,
+      seed: 12,
+      startC: 66,
+      hunting: 120,
+    },
+    {
+      title: 'Dry, two long hills',
+      note: '',
+      recordedOn: '2026-10-11',
+      habit: 'hills',
+      seconds: 1080,
+      seed: 13,
+      startC: 70,
+      hunting: 120,
+    },
+    {
+      title: 'Wet road, trailer on',
+      note: 'It stalled rolling up to the packing shed again.',
+      recordedOn: '2026-10-14',
+      habit: 'road',
+      seconds: 900,
+      seed: 14,
+      startC: 40,
+      hunting: 140,
+      dead: 'iat',
+    },
   ],
 }
 
@@ -133,14 +181,30 @@ export const turboFour: DemoVehicle = {
   engine: turboEngine,
   grid: turboGrid,
   flashed: handMade(turboEngine, turboGrid, 91, (_rpm, mapKpa) => (mapKpa > 100 ? 12 : 1)),
-  target: targetsOf(turboGrid, (_rpm, mapKpa) => (mapKpa >= 130 ? 0.8 : mapKpa >= 100 ? 0.85 : mapKpa >= 75 ? 0.93 : 1)),
-  drives: [{ title: 'Evening run, no boost', note: '', recordedOn: '2026-10-12', habit: 'road', seconds: 780, seed: 21, startC: 62 }],
+  target: targetsOf(turboGrid, (_rpm, mapKpa) =>
+    mapKpa >= 130 ? 0.8 : mapKpa >= 100 ? 0.85 : mapKpa >= 75 ? 0.93 : 1,
+  ),
+  drives: [
+    {
+      title: 'Evening run, no boost',
+      note: '',
+      recordedOn: '2026-10-12',
+      habit: 'road',
+      seconds: 780,
+      seed: 21,
+      startC: 62,
+    },
+  ],
 }
 
 export const demoVehicles: readonly DemoVehicle[] = [flatbed, turboFour]
 
 /** Drives one of the demo drives again; the same bits every time. */
-export const driveAgain = (vehicle: DemoVehicle, demo: DemoDrive, ve: ArrayLike<number> = vehicle.flashed): SimulatedLog =>
+export const driveAgain = (
+  vehicle: DemoVehicle,
+  demo: DemoDrive,
+  ve: ArrayLike<number> = vehicle.flashed,
+): SimulatedLog =>
   simulate({
     engine: vehicle.engine,
     flashed: { grid: vehicle.grid, ve },

@@ -24,8 +24,15 @@ const pick = (random: Random, low: number, high: number): number => low + (high 
 function nextStretch(engine: SimulatedEngine, habit: Habit, random: Random): Stretch {
   const draw = random.even()
   const idleShare = habit === 'yard' ? 0.6 : 0.12
-  if (draw < idleShare) return { kind: 'idle', seconds: pick(random, 8, 25), rpm: engine.idleRpm, mapKpa: pick(random, 33, 40) }
-  if (draw < idleShare + 0.13) return { kind: 'overrun', seconds: pick(random, 2, 6), rpm: pick(random, 1300, 0.5 * engine.revLimitRpm), mapKpa: pick(random, 24, 28) }
+  if (draw < idleShare)
+    return { kind: 'idle', seconds: pick(random, 8, 25), rpm: engine.idleRpm, mapKpa: pick(random, 33, 40) }
+  if (draw < idleShare + 0.13)
+    return {
+      kind: 'overrun',
+      seconds: pick(random, 2, 6),
+      rpm: pick(random, 1300, 0.5 * engine.revLimitRpm),
+      mapKpa: pick(random, 24, 28),
+    }
   const hard = habit === 'hills' ? 0.5 : habit === 'track' ? 0.65 : 0.2
   const full = random.even() < hard
   const top = habit === 'track' ? 0.95 : 0.72
@@ -41,7 +48,14 @@ function nextStretch(engine: SimulatedEngine, habit: Habit, random: Random): Str
  * Drives for a while: speed and pressure chase what each stretch asks for, with their own inertia, and never stand still.
  * @param hunting  amplitude of an idle that swings every 1.9 s, 1/min; 0 for a steady one.
  */
-export function drive(engine: SimulatedEngine, habit: Habit, seconds: number, stepS: number, hunting: number, random: Random): Moment[] {
+export function drive(
+  engine: SimulatedEngine,
+  habit: Habit,
+  seconds: number,
+  stepS: number,
+  hunting: number,
+  random: Random,
+): Moment[] {
   const moments: Moment[] = []
   let rpm = engine.idleRpm
   let map = 38
@@ -60,7 +74,10 @@ export function drive(engine: SimulatedEngine, habit: Habit, seconds: number, st
     rpm += (stretch.rpm + swing + 18 * wander - rpm) * Math.min(1, stepS / (stretch.kind === 'idle' ? 0.5 : inertiaS))
     map += (stretch.mapKpa - swing / 22 + 1.3 * wander - map) * Math.min(1, stepS / 0.22)
     const overrun = stretch.kind === 'overrun' && map < 30
-    const tpPct = stretch.kind === 'drive' ? Math.max(1, (map / Math.min(engine.topKpa, 103)) ** 2.2 * 85 * Math.min(1.2, 0.4 + rpm / engine.revLimitRpm)) : 0
+    const tpPct =
+      stretch.kind === 'drive'
+        ? Math.max(1, (map / Math.min(engine.topKpa, 103)) ** 2.2 * 85 * Math.min(1.2, 0.4 + rpm / engine.revLimitRpm))
+        : 0
     moments.push({ rpm, mapKpa: Math.max(20, map), tpPct: Math.min(100, tpPct), overrun })
   }
   return moments

@@ -24,7 +24,13 @@ export interface SimulatedEngine {
  * A smooth surface: breathing peaks at `peakRpm`, falls to both sides, and falls with manifold pressure as trapped
  * residual grows (the ideal-cycle shape), with two ripples that no bilinear grid follows exactly.
  */
-export function breathing(shape: { peak: number; peakRpm: number; width: number; ripplePct: number; topKpa: number }): (rpm: number, mapKpa: number) => number {
+export function breathing(shape: {
+  peak: number
+  peakRpm: number
+  width: number
+  ripplePct: number
+  topKpa: number
+}): (rpm: number, mapKpa: number) => number {
   return (rpm, mapKpa) => {
     const speed = Math.exp(-(((rpm - shape.peakRpm) / shape.width) ** 2) / 2)
     const residual = 1.0 - 0.115 * (100 / Math.max(mapKpa, 18) - 1) ** 0.82

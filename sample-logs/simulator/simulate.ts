@@ -30,7 +30,12 @@ const gasConstantAir = 287.05
 const stepS = 0.01
 
 /** Linear interpolation into a history by a quantity that only grows; the pointer only moves forward. */
-function delayed(grown: readonly number[], values: readonly number[], wanted: number, from: number): { value: number; at: number } {
+function delayed(
+  grown: readonly number[],
+  values: readonly number[],
+  wanted: number,
+  from: number,
+): { value: number; at: number } {
   let at = from
   while (at + 1 < grown.length - 1 && grown[at + 1]! <= wanted) at += 1
   const span = grown[at + 1]! - grown[at]!
@@ -78,7 +83,8 @@ export function simulate(input: SimulationInput): SimulatedLog {
     const ve = valueAt(input.flashed.grid, input.flashed.ve, rpm, mapSeen)
     const perCycle = (mapKpa * engine.displacementL) / (gasConstantAir * (iatTrue + 273.15)) / engine.cylinders
     const airTrueMg = (engine.trueVe(rpm, mapKpa) / 100) * perCycle * 1e6
-    const airAssumedMg = (ve / 100) * ((mapSeen * engine.displacementL) / (gasConstantAir * (iatTrue + 273.15)) / engine.cylinders) * 1e6
+    const airAssumedMg =
+      (ve / 100) * ((mapSeen * engine.displacementL) / (gasConstantAir * (iatTrue + 273.15)) / engine.cylinders) * 1e6
     const multiplier = (1 + warm) * (1 + after) * (1 + accel) * (1 + trim)
     const fuelMg = cut ? 0 : (airAssumedMg / engine.stoichAfr / wanted) * multiplier
     // Wall film on the flow of fuel, mg per second and cylinder.
@@ -98,7 +104,8 @@ export function simulate(input: SimulationInput): SimulatedLog {
     phiSensor += (1 - Math.exp(-stepS / engine.sensor.lagS)) * (found.value - phiSensor)
     const lambda = 1 / Math.max(phiSensor, 0.2) + 0.006 * random.normal()
     const shown = Math.min(engine.sensor.high, Math.max(engine.sensor.low, lambda))
-    if (input.closedLoop && ect > 60 && !cut && mapKpa < 75) trim = Math.max(-0.15, Math.min(0.15, trim + 0.25 * (shown - wanted) * stepS))
+    if (input.closedLoop && ect > 60 && !cut && mapKpa < 75)
+      trim = Math.max(-0.15, Math.min(0.15, trim + 0.25 * (shown - wanted) * stepS))
     else trim *= 1 - stepS / 2
     if (n % every !== 0) return
     write('Time (s)', t, 2)

@@ -74,14 +74,14 @@ async function send(
 /** fetch tells nothing of an upload's progress, so files go by XMLHttpRequest. */
 function upload(
   address: string,
-  fields: Record<string, unknown>,
+  fields: Record<string, string | undefined>,
   file: File,
   onProgress: ((share: number) => void) | undefined,
   signal: AbortSignal | undefined,
 ): Promise<{ status: number; body: unknown }> {
   return new Promise((resolve, reject) => {
     const form = new FormData()
-    for (const [name, value] of Object.entries(fields)) if (value !== undefined) form.set(name, String(value))
+    for (const [name, value] of Object.entries(fields)) if (value !== undefined) form.set(name, value)
     form.set('file', file)
     const request = new XMLHttpRequest()
     request.open('POST', address)
@@ -104,7 +104,7 @@ export async function call<Params, Query, Body, Result>(
   const answer = options.file
     ? await upload(
         address,
-        (options.body ?? {}) as Record<string, unknown>,
+        (options.body ?? {}) as Record<string, string | undefined>,
         options.file,
         options.onProgress,
         options.signal,

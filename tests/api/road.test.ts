@@ -175,7 +175,7 @@ describe('what the life cycle refuses', () => {
     await crew.tuner.call(submitRevision, { params, body: { note: '' } })
     const sign = () =>
       crew.reviewer.call(signOff, { params, body: { name: crew.reviewer.name, checksum: revision.checksum, note: '' } })
-    const statuses = (await Promise.all([sign(), sign(), sign()])).map(({ status }) => status).sort()
+    const statuses = (await Promise.all([sign(), sign(), sign()])).map(({ status }) => status).sort((a, b) => a - b)
     expect(statuses).toEqual([200, 409, 409])
   })
 

@@ -133,7 +133,7 @@ export async function receiveLog(
   const sha256 = await sha256Of(file.path)
   const twin = await store.logBySha(deps.db, vehicleId, sha256)
   if (twin) throw alreadyHere(twin)
-  const fileName = file.name.replace(/[/\\\u0000-\u001f]/g, '').slice(0, 120) || 'log.csv'
+  const fileName = file.name.replace(/[/\\\p{Cc}]/gu, '').slice(0, 120) || 'log.csv'
   try {
     return await deps.db.transaction(async (tx) => {
       if (facts.flashedRevisionId) await ofVehicle(tx, scope, vehicleId, facts.flashedRevisionId)

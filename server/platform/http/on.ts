@@ -54,6 +54,7 @@ function parse<T>(schema: z.ZodType<T> | undefined, value: unknown, part: string
 function uploader(binder: Binder): RequestHandler {
   return multer({
     dest: binder.uploadDir,
+    defParamCharset: 'utf8',
     limits: { fileSize: binder.uploadMaxBytes, files: 1, fields: 20, fieldSize: 10_000 },
   }).single('file')
 }

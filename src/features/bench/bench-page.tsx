@@ -1,5 +1,6 @@
 /** The bench: what wants attention, most urgent first, and the vehicles. */
 import { useQueries, useQuery } from '@tanstack/react-query'
+import { useState } from 'react'
 import type { LogLine } from '../../../shared/contract/logs.ts'
 import type { ProposalLine } from '../../../shared/contract/proposals.ts'
 import type { RevisionLine } from '../../../shared/contract/tables.ts'
@@ -97,6 +98,9 @@ export function attentionOf(all: readonly Gathered[], may: { sign: boolean; edit
 export default function BenchPage() {
   usePageTitle('Bench')
   const me = useMe()
+  const [today] = useState(() =>
+    new Intl.DateTimeFormat('en-GB', { weekday: 'long', day: 'numeric', month: 'long' }).format(new Date()),
+  )
   const mayEdit = useCan('vehicle:edit')
   const maySign = useCan('revision:sign-off')
   const seesProposals = useCan('proposal:read')
@@ -130,7 +134,7 @@ export default function BenchPage() {
   return (
     <Leaf>
       <PageHead
-        folio={new Intl.DateTimeFormat('en-GB', { weekday: 'long', day: 'numeric', month: 'long' }).format(new Date())}
+        folio={today}
         title={first ? first.title : 'Nothing waits on the bench'}
         lead={first ? `${first.detail}.` : `${me.workshop.name} is up to date.`}
         actions={

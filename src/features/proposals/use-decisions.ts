@@ -26,7 +26,7 @@ export function useDecisions(proposal: Proposal & { surface: Surface }): Decisio
   const [undone, setUndone] = useState<readonly Step[]>([])
   // Changes on their way to the server; later ones wait, so that each is sent with the version before it.
   const waiting = useRef<readonly (readonly CellChange[])[]>([])
-  const [queue, setQueue] = useState(waiting.current)
+  const [queue, setQueue] = useState<readonly (readonly CellChange[])[]>([])
   const mutation = useDecideCells(proposal.id)
 
   const stored: Decided = { surface: proposal.surface, decisions: proposal.decisions, byHand: proposal.byHand }

@@ -9,6 +9,7 @@ import {
   submitRevision,
   withdrawRevision,
 } from '../../../shared/contract/reviews.ts'
+import type { Revision } from '../../../shared/contract/tables.ts'
 import { call } from '../../lib/api.ts'
 
 export const reviewQueries = {
@@ -30,7 +31,7 @@ export function useReviewMoves(revisionId: string) {
   const params = { revisionId }
   return {
     submit: useMove((note: string) => call(submitRevision, { params, body: { note } })),
-    withdraw: useMove((_: undefined) => call(withdrawRevision, { params })),
+    withdraw: useMove<undefined, Revision>(() => call(withdrawRevision, { params })),
     sign: useMove((body: { name: string; checksum: string; note: string }) => call(signOff, { params, body })),
     sendBack: useMove((note: string) => call(sendBack, { params, body: { note } })),
     comment: useMove((body: { cell: number | null; text: string }) => call(addComment, { params, body })),

@@ -1,0 +1,123 @@
+/** `npm test`: sets up, runs every check there is, and ends with one line that counts them. */
+import { existsSync, readFileSync, rmSync } from 'node:fs'
+import { join } from 'node:path'
+import { buildClient } from './build.mjs'
+import { keepRunning, waitUntilReady } from './children.mjs'
+import { runQuietly, runShown } from './commands.mjs'
+import { ensureChromium } from './packages.mjs'
+import { dataDir, ensureDatabase, prepare, root } from './setup.mjs'
+
+const bin = (name) => join(root, 'node_modules', '.bin', name)
+const totals = { passed: 0, failed: 0 }
+const count = (passed, failed) => {
+  totals.passed += passed
+  totals.failed += failed
+}
+
+async function check(name, command, args) {
+  console.log(`\n== ${name}`)
+  const code = await runShown(command, args, { cwd: root })
+  count(code === 0 ? 1 : 0, code === 0 ? 0 : 1)
+}
+
+function readReport(path) {
+  if (!existsSync(path)) return null
+  return JSON.parse(readFileSync(path, 'utf8'))
+}
+
+async function vitest(env) {
+  console.log('\n== Unit, API and page tests')
+  const report = join(dataDir, 'vitest.json')
+  rmSync(report, { force: true })
+  const code = await runShown(
+    bin('vitest'),
+    ['run', '--reporter=dot', '--reporter=json', `--outputFile.json=${report}`],
+    { cwd: root, env },
+  )
+  const found = readReport(report)
+  if (!found || found.numTotalTests === 0) return count(0, 1)
+  count(found.numPassedTests, found.numFailedTests)
+  // A file that could not even be loaded has no failed test of its own.
+  if (code !== 0 && found.numFailedTests === 0) count(0, 1)
+}
+
+const freePort = async () => {
+  const { createServer } = await import('node:net')
+  return new Promise((resolve) => {
+    const server = createServer().listen(0, '127.0.0.1', () => {
+      const { port } = server.address()
+      server.close(() => resolve(port))
+    })
+  })
+}
+
+/** A product of its own for the browser: fresh database, seeded demo, web and worker processes. */
+async function browser(adminUrl, baseEnv) {
+  console.log('\n== Browser tests')
+  const chromium = ensureChromium()
+  buildClient(root)
+  const port = await freePort()
+  const home = join(dataDir, 'e2e')
+  rmSync(home, { recursive: true, force: true })
+  const env = {
+    ...baseEnv,
+    NODE_ENV: 'production',
+    DATABASE_URL: await ensureDatabase(adminUrl, 'evenburn_e2e', { fresh: true }),
+    EVENBURN_DATA: home,
+    SESSION_SECRET: 'a secret for browser tests only, long enough',
+    EVENBURN_DEMO: '1',
+    PORT: String(port),
+    PUBLIC_URL: `http://localhost:${port}`,
+    LOG_LEVEL: 'warn',
+    TRY_LIMIT: '100',
+  }
+  const tsx = ['--import', 'tsx']
+  runQuietly(process.execPath, [...tsx, 'server/migrate.ts'], { cwd: root, env })
+  runQuietly(process.execPath, [...tsx, 'server/seed.ts'], { cwd: root, env })
+  const children = keepRunning(
+    [
+      { name: 'web', args: [...tsx, 'server/main.ts'] },
+      { name: 'worker', args: [...tsx, 'server/worker.ts'] },
+    ],
+    { cwd: root, env },
+  )
+  const report = join(dataDir, 'playwright.json')
+  rmSync(report, { force: true })
+  try {
+    await waitUntilReady(`http://127.0.0.1:${port}/api/health`)
+    await runShown(bin('playwright'), ['test'], {
+      cwd: root,
+      env: { ...env, CHROMIUM: chromium, E2E_URL: env.PUBLIC_URL, PLAYWRIGHT_JSON_OUTPUT_NAME: report },
+    })
+  } finally {
+    await children.stop()
+  }
+  const stats = readReport(report)?.stats
+  if (!stats || stats.expected + stats.unexpected === 0) return count(0, 1)
+  count(stats.expected + stats.flaky, stats.unexpected + stats.skipped)
+}
+
+async function main() {
+  const { server } = await prepare()
+  const env = { ...process.env, TEST_DATABASE_URL: server.url }
+  delete env['NODE_ENV']
+  try {
+    await check('Lint', bin('oxlint'), ['--type-aware', '--deny-warnings'])
+    await check('Format', bin('prettier'), ['--check', '--log-level', 'warn', '.'])
+    await check('Types', bin('tsc'), ['--noEmit'])
+    await check('Types of shared, without Node or DOM', bin('tsc'), ['--noEmit', '-p', 'shared'])
+    await check('Types of the core, without Node or DOM', bin('tsc'), ['--noEmit', '-p', 'server/core'])
+    await vitest(env)
+    if (process.env['SKIP_E2E'] === '1') console.log('\nBrowser tests were left out: SKIP_E2E=1')
+    else await browser(server.url, process.env)
+  } finally {
+    server.stop()
+  }
+}
+
+await main().catch((error) => {
+  console.error(error.message)
+  count(0, 1)
+})
+console.log(`\n${totals.passed} passed, ${totals.failed} failed`)
+process.exit(totals.failed > 0 || totals.passed === 0 ? 1 : 0)
