@@ -49,6 +49,8 @@ export function useDecideCells(proposalId: string) {
     onSuccess: (proposal) => {
       client.setQueryData(proposalQueries.detail(proposalId).queryKey, proposal)
     },
+    // Refused because somebody else decided meanwhile: their decisions are fetched before anything more is sent.
+    onError: () => client.invalidateQueries({ queryKey: proposalQueries.detail(proposalId).queryKey }),
   })
 }
 

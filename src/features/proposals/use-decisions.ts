@@ -27,6 +27,8 @@ export function useDecisions(proposal: Proposal & { surface: Surface }): Decisio
   // Changes on their way to the server; later ones wait, so that each is sent with the version before it.
   const waiting = useRef<readonly (readonly CellChange[])[]>([])
   const [queue, setQueue] = useState<readonly (readonly CellChange[])[]>([])
+  // The page may not have been drawn again since the last answer: the newest version known counts.
+  const answered = useRef(0)
   const mutation = useDecideCells(proposal.id)
 
   const stored: Decided = { surface: proposal.surface, decisions: proposal.decisions, byHand: proposal.byHand }
@@ -38,10 +40,11 @@ export function useDecisions(proposal: Proposal & { surface: Surface }): Decisio
   }
 
   const drain = async (start: number): Promise<void> => {
-    let version = start
+    let version = Math.max(start, answered.current)
     for (let first = waiting.current[0]; first; first = waiting.current[0]) {
       try {
         version = (await mutation.mutateAsync({ version, cells: first.map((change) => ({ ...change })) })).version
+        answered.current = version
         enqueue(waiting.current.slice(1))
       } catch {
         // The banner says what was refused; what was not stored is taken off the page, so that it shows the truth.

@@ -94,8 +94,9 @@ export function Heatmap(props: HeatmapProps) {
     const next = cellAfter(grid, focus, event.key, event.ctrlKey || event.metaKey)
     if (next !== null) {
       event.preventDefault()
-      onSelect({ anchor: event.shiftKey ? (selection?.anchor ?? focus) : next, focus: next })
+      // First the focus, which may select on its own, then what the key means.
       focusCell(next)
+      onSelect({ anchor: event.shiftKey ? (selection?.anchor ?? focus) : next, focus: next })
     } else if (event.key === 'Escape') onSelect(null)
     else if (event.key === 'a' && (event.ctrlKey || event.metaKey)) {
       event.preventDefault()

@@ -1,0 +1,122 @@
+/** Recognising columns, units and the health of channels. */
+import { unit } from 'mathjs'
+import { describe, expect, test } from 'vitest'
+import { conversion } from '../../../server/core/channels/convert.ts'
+import { channelHealth } from '../../../server/core/channels/health.ts'
+import { recogniseName } from '../../../server/core/channels/names.ts'
+import { evenTime, missingChannels, recogniseColumns } from '../../../server/core/channels/recognise.ts'
+
+describe('names', () => {
+  // Terms and abbreviations of SAE J1930 / ISO 15031-2 (from memory), and spellings of other languages.
+  test.each([
+    ['MAP', 'map'],
+    ['Manifold Absolute Pressure', 'map'],
+    ['ECT', 'ect'],
+    ['Engine Coolant Temperature', 'ect'],
+    ['IAT', 'iat'],
+    ['TP', 'tp'],
+    ['Throttle_Position', 'tp'],
+    ['BARO', 'baro'],
+    ['Drehzahl', 'rpm'],
+    ['Régime', null],
+    ['Saugrohrdruck', 'map'],
+    ['STFT', 'trim'],
+    ['knock', null],
+  ])('%s is %s', (title, channel) => expect(recogniseName(title)).toBe(channel))
+})
+
+describe('units', () => {
+  // mathjs carries the exact definitions of the pound, inch and standard gravity.
+  test.each([
+    ['psi', 14.5, unit(14.5, 'psi').toNumber('kPa')],
+    ['bar', 1.2, unit(1.2, 'bar').toNumber('kPa')],
+    ['mbar', 1013, unit(1013, 'mbar').toNumber('kPa')],
+    ['inHg', 29.92, unit(29.92 * 25.4, 'mmHg').toNumber('kPa')],
+  ])('pressure in %s', (name, value, kpa) => expect(conversion('map', name, 14.7)!(value)).toBeCloseTo(kpa, 3))
+
+  test.each([
+    ['°F', 212, 100],
+    ['F', 32, 0],
+    ['K', 273.15, 0],
+    ['°C', 20, 20],
+  ])('temperature in %s', (name, value, celsius) =>
+    expect(conversion('ect', name, 14.7)!(value)).toBeCloseTo(celsius, 10),
+  )
+
+  test('air-fuel ratio is lambda of the fuel it was computed with', () => {
+    expect(conversion('lambda', 'AFR', 14.7)!(14.7)).toBe(1)
+    expect(conversion('lambda', 'phi', 14.7)!(1.25)).toBe(0.8)
+  })
+
+  test('a unit nobody knows is null, not a guess', () => expect(conversion('map', 'furlong', 14.7)).toBeNull())
+})
+
+describe('recognition', () => {
+  const rows = 50
+  const make = (low: number, high: number) =>
+    Float32Array.from({ length: rows }, (_, i) => low + ((high - low) * i) / (rows - 1))
+
+  test('pounds, Fahrenheit and air-fuel ratio are understood from names and numbers alone', () => {
+    const mapping = recogniseColumns(
+      ['Time', 'RPM', 'MAP', 'AFR', 'CLT'],
+      ['', '', '', '', ''],
+      [make(0, 49), make(800, 5000), make(5, 14.5), make(11, 15), make(60, 200)],
+      14.7,
+    )
+    expect(mapping.map(({ channel, unit: name }) => [channel, name])).toEqual([
+      ['time', 's'],
+      ['rpm', 'rpm'],
+      ['map', 'psi'],
+      ['lambda', 'AFR'],
+      ['ect', 'F'],
+    ])
+    expect(missingChannels(mapping)).toEqual([])
+  })
+
+  test('boost without a unit is asked about, not guessed', () => {
+    const [column] = recogniseColumns(['Boost'], [''], [make(-0.8, 1.1)], 14.7)
+    expect(column!.channel).toBeNull()
+    expect(column!.reason).toMatch(/runs from -0\.8/)
+  })
+
+  test('time that restarts or stands goes on growing', () => {
+    const even = evenTime(Float64Array.from([100, 100.1, 100.2, 0, 0.1, 0.1, 0.2]))
+    even.forEach((t, i) => expect(t).toBeCloseTo(i * 0.1, 6))
+  })
+})
+
+describe('health', () => {
+  const facts = { boosted: false, lambdaLow: 0.65, lambdaHigh: 1.36, rateHz: 20 }
+  const of = (channel: 'iat' | 'map' | 'lambda' | 'ect', values: number[]) =>
+    channelHealth(new Map([[channel, values]]), facts).find((each) => each.channel === channel)!
+  test.each([
+    ['iat', [-40, -40, -40], 'dead', /open circuit/],
+    ['iat', [], 'dead', /Sends nothing/],
+    ['ect', [12, 20, 35], 'caution', /Never warmer than 35/],
+    ['map', [30, 60, 150], 'caution', /without boost/],
+    ['lambda', [0.65, 0.65, 0.65, 1.36], 'dead', /end of its range/],
+    [
+      'lambda',
+      Array.from({ length: 100 }, (_, i) => (i === 4 ? 0 : 0.9 + i / 1000)),
+      'caution',
+      /Drops out for 1\.0 %/,
+    ],
+    ['map', [30, 60, 99], 'sound', /Moves/],
+  ] as const)('%s %j is %s', (channel, values, state, words) => {
+    const health = of(channel, [...values])
+    expect(health.state).toBe(state)
+    expect(health.remark).toMatch(words)
+  })
+
+  test('the worst comes first, what the file lacks last', () => {
+    const all = channelHealth(
+      new Map([
+        ['map', [30, 60, 99]],
+        ['iat', [-40, -40]],
+      ] as const),
+      facts,
+    )
+    expect(all[0]!.channel).toBe('iat')
+    expect(all.at(-1)!.state).toBe('absent')
+  })
+})
