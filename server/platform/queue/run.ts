@@ -27,13 +27,14 @@ export async function migrateQueue(deps: Pick<Deps, 'pool'>): Promise<void> {
   await runMigrations({ pgPool: deps.pool })
 }
 
-/** Takes back the jobs of pools that were not heard of for three beats. */
+/** Takes back the jobs of pools that were not heard of for three beats; a job just taken may precede the first beat. */
 export async function sweep(deps: Deps): Promise<void> {
   const limit = new Date(deps.clock.now().getTime() - silentMs)
   const dead = await deps.db.execute<{ locked_by: string }>(sql`
     select distinct jobs.locked_by from graphile_worker.jobs as jobs
     left join worker_beats on worker_beats.pool_id = jobs.locked_by
-    where jobs.locked_by is not null and (worker_beats.seen_at is null or worker_beats.seen_at < ${limit.toISOString()})
+    where jobs.locked_at < ${limit.toISOString()}
+      and (worker_beats.seen_at is null or worker_beats.seen_at < ${limit.toISOString()})
   `)
   const ids = dead.rows.map((row) => row.locked_by)
   if (ids.length === 0) return

@@ -13,6 +13,7 @@ import { Note } from '../../ui/note.tsx'
 import { AcceptByRule } from './accept-by-rule.tsx'
 import { CellCard } from './cell-card.tsx'
 import { cellState, hasEvidence, tally, type Decided, type Surface } from './decisions.ts'
+import { NearCells } from './near-cells.tsx'
 import { LogsRail } from './logs-rail.tsx'
 import { MakeRevision } from './make-revision.tsx'
 import { TallyRow } from './tally-row.tsx'
@@ -181,6 +182,14 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
             onKey={onKey}
             cellLabel={(cell) => labelOf(proposal.surface, decided, view, cell)}
           />
+          {selection ? (
+            <NearCells
+              decided={decided}
+              view={view}
+              cell={selection.focus}
+              onSelect={(cell) => setSelection({ anchor: cell, focus: cell })}
+            />
+          ) : null}
           <Legend view={viewScale[view]} unit={viewUnit[view]} marks />
           <TallyRow decided={decided} revisionNumber={proposal.base.number + 1} />
         </section>

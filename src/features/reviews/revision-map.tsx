@@ -48,6 +48,9 @@ export function RevisionMap({ revision, cell, onSelect, cellName }: RevisionMapP
         values={values}
         view={view}
         format={format}
+        formatNarrow={(value) =>
+          change ? formatSigned(value, 0) : formatNumber(value, kind === 've' ? 0 : 2).replace(/^0/, '')
+        }
         none={none}
         mark={(index) => (provenance ? (marks[provenance.decision[index] ?? 'none'] ?? null) : null)}
         selection={cell === null ? null : { anchor: cell, focus: cell }}

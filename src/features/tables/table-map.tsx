@@ -25,6 +25,7 @@ export function TableMap({ kind, grid, values, label }: TableMapProps) {
         values={values}
         view={kind === 've' ? 'magnitude' : 'lambda'}
         format={(value) => formatNumber(value, digits)}
+        formatNarrow={(value) => formatNumber(value, kind === 've' ? 0 : 2).replace(/^0/, '')}
         none={() => false}
         selection={selection}
         onSelect={setSelection}

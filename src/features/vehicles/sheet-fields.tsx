@@ -60,7 +60,11 @@ export function SheetFields({ draft, errors, onChange }: SheetFieldsProps) {
               onChange({
                 ...draft,
                 fuel,
-                numbers: { ...draft.numbers, stoichAfr: String(stoichAfr), fuelDensityGPerCc: String(densityGPerCc) },
+                numbers: {
+                  ...draft.numbers,
+                  stoichAfr: stoichAfr.toFixed(2),
+                  fuelDensityGPerCc: densityGPerCc.toFixed(3),
+                },
               })
             }
           }}

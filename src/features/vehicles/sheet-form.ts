@@ -1,4 +1,5 @@
 /** The engine sheet as it is typed: texts with a point or a comma, and what they become. */
+import { blend, pureFuels, stoichiometricAfr, type Fuel } from '../../../shared/fuel.ts'
 import type { EngineSheetInput } from '../../../shared/contract/vehicles.ts'
 
 export type NumberName = Exclude<keyof EngineSheetInput, 'boosted' | 'fuel'>
@@ -9,20 +10,31 @@ export interface SheetDraft {
   readonly fuel: EngineSheetInput['fuel']
 }
 
-/**
- * Stoichiometric ratio and density of fuels: compositions of 40 CFR 1065.655 and EC 692/2008 (from memory) through
- * the formula of the reference page; densities of the AFDC table and blends by mass.
- */
-export const fuels: Readonly<
-  Record<Exclude<EngineSheetInput['fuel'], 'custom'>, { name: string; stoichAfr: number; densityGPerCc: number }>
-> = {
-  petrol: { name: 'Petrol without alcohol', stoichAfr: 14.6, densityGPerCc: 0.745 },
-  e5: { name: 'Petrol, 5 % ethanol', stoichAfr: 14.3, densityGPerCc: 0.747 },
-  e10: { name: 'Petrol, 10 % ethanol', stoichAfr: 14.01, densityGPerCc: 0.749 },
-  e85: { name: 'Ethanol, 15 % petrol', stoichAfr: 9.8, densityGPerCc: 0.783 },
-  ethanol: { name: 'Ethanol', stoichAfr: 9.0, densityGPerCc: 0.789 },
-  methanol: { name: 'Methanol', stoichAfr: 6.47, densityGPerCc: 0.794 },
-  lpg: { name: 'LPG', stoichAfr: 15.64, densityGPerCc: 0.506 },
+interface SheetFuel {
+  readonly name: string
+  readonly stoichAfr: number
+  readonly densityGPerCc: number
+}
+
+const pure = (fuel: Fuel): SheetFuel => ({
+  name: fuel.name,
+  stoichAfr: stoichiometricAfr(fuel),
+  densityGPerCc: fuel.densityGPerCc,
+})
+const withEthanol = (name: string, volumeFraction: number): SheetFuel => ({
+  name,
+  ...blend(pure(pureFuels.petrol), pure(pureFuels.ethanol), volumeFraction),
+})
+
+/** What the choice of a fuel fills in. */
+export const fuels: Readonly<Record<Exclude<EngineSheetInput['fuel'], 'custom'>, SheetFuel>> = {
+  petrol: pure(pureFuels.petrol),
+  e5: withEthanol('Petrol, 5 % ethanol', 0.05),
+  e10: withEthanol('Petrol, 10 % ethanol', 0.1),
+  e85: withEthanol('Ethanol, 15 % petrol', 0.85),
+  ethanol: pure(pureFuels.ethanol),
+  methanol: pure(pureFuels.methanol),
+  lpg: pure(pureFuels.lpg),
 }
 
 export const emptySheet: SheetDraft = {

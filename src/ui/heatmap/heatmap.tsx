@@ -19,6 +19,8 @@ interface HeatmapProps {
   readonly values: readonly (number | null)[]
   readonly view: HeatmapView
   readonly format: (value: number) => string
+  /** Shorter text for a phone's narrow cells; without it a phone shows the tone alone. */
+  readonly formatNarrow?: (value: number) => string
   /** True where no log has been. */
   readonly none: (cell: number) => boolean
   readonly mark?: (cell: number) => HeatmapMark | null
@@ -156,6 +158,7 @@ function Cell(props: HeatmapProps & { cell: number; selected: boolean; tabbable:
     values,
     view,
     format,
+    formatNarrow,
     none,
     mark,
     evidenceS,
@@ -189,7 +192,12 @@ function Cell(props: HeatmapProps & { cell: number; selected: boolean; tabbable:
       }}
     >
       <Mark mark={mark?.(cell) ?? null} />
-      {value === null ? '' : format(value)}
+      {value === null ? null : (
+        <>
+          <span className="phone:hidden">{format(value)}</span>
+          {formatNarrow ? <span className="hidden phone:inline">{formatNarrow(value)}</span> : null}
+        </>
+      )}
       {seconds > 0 ? (
         <i
           aria-hidden

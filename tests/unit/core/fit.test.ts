@@ -323,3 +323,25 @@ describe('the prior', () => {
     mean.forEach((value) => expect(value).toBeCloseTo(Math.log(70), 6))
   })
 })
+
+describe('the correction by lambda', () => {
+  // fuel_new = fuel_old · lambda_measured / lambda_target: the definition of lambda; worked values 84.0 and 82.823529.
+  test.each([
+    [80, 1.05, 1, 84],
+    [80, 0.88, 0.85, 82.823529],
+  ])('VE %s read %s where %s was asked becomes %s', (ve, measured, wanted, corrected) => {
+    const flashed = new Float64Array(n).fill(ve)
+    const still = drive('a', 1, 0, flashed)
+    const one: Drive = {
+      ...still,
+      lambda: still.lambda.map((_, i) => measured * (1 + 1e-5 * (i % 2))),
+      targetLambda: still.lambda.map(() => wanted),
+    }
+    const result = learn({ ...input([one]), current: flashed })
+    if (!result.ok) throw new Error(result.detail)
+    const { handBilinear, fitted, evidenceS } = result.proposal
+    const cell = evidenceS.indexOf(Math.max(...evidenceS))
+    expect(handBilinear[cell]).toBeCloseTo(corrected, 2)
+    expect(fitted[cell]! / corrected).toBeCloseTo(1, 3)
+  })
+})
