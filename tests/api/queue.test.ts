@@ -60,22 +60,21 @@ test('when a worker process is killed in the middle of a job, then another takes
 
 test('when a worker is alive, then the sweep leaves its jobs alone', async () => {
   let finish = () => {}
+  let begun = () => {}
   const started = new Promise<void>((resolve) => {
-    void startWorker(server.deps, [
-      {
-        name: 'test.long',
-        handle: () => {
-          resolve()
-          return new Promise<void>((end) => {
-            finish = end
-          })
-        },
-      },
-    ]).then((worker) => {
-      stop = () => worker.stop()
-    })
+    begun = resolve
   })
-  let stop = () => Promise.resolve()
+  const worker = await startWorker(server.deps, [
+    {
+      name: 'test.long',
+      handle: () => {
+        begun()
+        return new Promise<void>((end) => {
+          finish = end
+        })
+      },
+    },
+  ])
   await server.deps.db.execute(sql`select graphile_worker.add_job('test.long', '{}'::json)`)
   await started
   await sweep(server.deps)
@@ -84,7 +83,7 @@ test('when a worker is alive, then the sweep leaves its jobs alone', async () =>
   )
   expect(rows.rows).toHaveLength(1)
   finish()
-  await stop()
+  await worker.stop()
 })
 
 test('when a reading was begun anew, then a stale worker’s last word changes nothing', async () => {
