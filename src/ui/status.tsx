@@ -56,8 +56,8 @@ const look = {
 export function Status({ state }: { state: StatusWord }) {
   const [tone, Icon] = words[state]
   return (
-    <span className={`inline-flex items-center gap-1.5 whitespace-nowrap ${look[tone]}`}>
-      {Icon ? <Icon aria-hidden size={14} strokeWidth={2.25} /> : null}
+    <span className={`inline-flex items-baseline gap-1.5 whitespace-nowrap ${look[tone]}`}>
+      {Icon ? <Icon aria-hidden size={14} strokeWidth={2.25} className="self-center" /> : null}
       {state === 'Open' ? <i aria-hidden className="inline-block size-2.5 border-[1.5px] border-current" /> : null}
       {state === 'No evidence' ? (
         <i aria-hidden className="inline-block h-2.5 w-3.5 border border-rule [background:var(--hatch)]" />

@@ -34,7 +34,7 @@ export function TableMap({ kind, grid, values, label }: TableMapProps) {
         }
         snug
       />
-      <Legend view={kind === 've' ? 'magnitude' : 'lambda'} unit={kind === 've' ? 'VE, %' : 'lambda'} />
+      <Legend view={kind === 've' ? 'magnitude' : 'lambda'} unit={kind === 've' ? 'VE, %' : 'lambda'} none={false} />
     </>
   )
 }

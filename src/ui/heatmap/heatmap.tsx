@@ -117,7 +117,7 @@ export function Heatmap(props: HeatmapProps) {
     >
       <thead>
         <tr>
-          <th scope="col">rpm</th>
+          <th scope="col">{snug ? 'kPa, rpm' : 'rpm'}</th>
           {grid.rpm.map((rpm, col) => (
             <th key={rpm} scope="col" className={selection && focus % cols === col ? 'font-semibold text-ink' : ''}>
               {rpm}
@@ -131,7 +131,7 @@ export function Heatmap(props: HeatmapProps) {
             <tr key={mapKpa}>
               <th scope="row" className={selection && Math.floor(focus / cols) === row ? 'font-semibold text-ink' : ''}>
                 {row === grid.mapKpa.length - 1 ? (
-                  <span className="block text-ink-faint phone:sr-only">kPa</span>
+                  <span className={snug ? 'sr-only' : 'block text-ink-faint phone:sr-only'}>kPa</span>
                 ) : null}
                 {mapKpa}
               </th>

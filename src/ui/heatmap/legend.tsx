@@ -5,7 +5,17 @@ import { familyOf, wedgeOf, type HeatmapView } from './scale.ts'
 
 const small = { size: 12, strokeWidth: 2.25, 'aria-hidden': true } as const
 
-export function Legend({ view, unit, marks = false }: { view: HeatmapView; unit: string; marks?: boolean }) {
+export function Legend({
+  view,
+  unit,
+  marks = false,
+  none = true,
+}: {
+  view: HeatmapView
+  unit: string
+  marks?: boolean
+  none?: boolean
+}) {
   const digits = view === 'lambda' ? 2 : view === 'uncertainty' ? 1 : 0
   return (
     <div className="mt-3 flex flex-wrap items-start gap-x-8 gap-y-2 text-small text-ink-quiet">
@@ -53,10 +63,12 @@ export function Legend({ view, unit, marks = false }: { view: HeatmapView; unit:
           </li>
         </ul>
       ) : null}
-      <span className="flex items-center gap-1.5">
-        <i aria-hidden className="inline-block h-3 w-5 border border-rule [background:var(--hatch)]" />
-        no evidence
-      </span>
+      {none ? (
+        <span className="flex items-center gap-1.5">
+          <i aria-hidden className="inline-block h-3 w-5 border border-rule [background:var(--hatch)]" />
+          no evidence
+        </span>
+      ) : null}
     </div>
   )
 }

@@ -15,8 +15,8 @@ export const changeEdges = [-16, -12, -8, -4, -1, 1, 4, 8, 12, 16] as const
 export const evidenceEdges = [1, 1.7, 2.8, 4.6, 7.7, 12.9, 21.5, 35.9, 59.9, 100] as const
 /** ± % of the value. */
 export const uncertaintyEdges = [0.5, 1, 1.5, 2, 3, 4, 6] as const
-/** Lambda: richer is further from the page's middle. */
-export const lambdaEdges = [0.78, 0.82, 0.86, 0.9, 0.94, 0.98, 1.02, 1.06, 1.1, 1.14] as const
+/** Lambda: neutral from 0.98 to 1.02, copper is richer, slate leaner. */
+export const lambdaEdges = [0.78, 0.83, 0.88, 0.93, 0.98, 1.02, 1.06, 1.1, 1.14, 1.18] as const
 
 export type HeatmapView = 'magnitude' | 'change' | 'evidence' | 'uncertainty' | 'misfit' | 'lambda'
 
