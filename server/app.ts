@@ -49,7 +49,7 @@ export function buildApp(deps: Deps, siteDir: string | null): Express {
         req: (req: { id: string; method: string; url: string }) => ({
           id: req.id,
           method: req.method,
-          path: req.url.split('?')[0],
+          path: loggedPath(req.url),
         }),
         res: (res: { statusCode: number }) => ({ status: res.statusCode }),
       },
@@ -83,6 +83,10 @@ export function buildApp(deps: Deps, siteDir: string | null): Express {
   app.use(problemWriter(deps.log))
   return app
 }
+
+/** Links from mails carry their secret in the path; a log must not. */
+const loggedPath = (url: string): string =>
+  (url.split('?')[0] ?? '').replace(/\/(password-resets|invitation-links|reset|invitation)\/[^/]+/, '/$1/…')
 
 /** The built client: hashed assets for ever, the page for every other address. */
 function serveSite(app: Express, root: string): void {
