@@ -284,6 +284,25 @@ describe('what the life cycle refuses', () => {
   })
 })
 
+describe('who works alone', () => {
+  test('when the workshop allows it, then an author signs, and the signature and the file say so', async () => {
+    const alone = await aWorkshop(server, 'alone', true)
+    const everybody = crew
+    crew = alone
+    try {
+      const { revision } = await draft()
+      const params = { revisionId: revision.id }
+      await alone.tuner.call(submitRevision, { params, body: { note: '' } })
+      expect((await alone.tuner.call(getReview, { params })).body.signsOwn).toBe(true)
+      const body = { name: alone.tuner.name, checksum: revision.checksum, note: '' }
+      expect((await alone.tuner.call(signOff, { params, body })).body.signature?.byAuthor).toBe(true)
+      expect((await alone.tuner.call(exportTable, { params })).text).toContain('its author')
+    } finally {
+      crew = everybody
+    }
+  })
+})
+
 describe('owners', () => {
   test('when a revision is a draft, then an owner finds nothing; when it is in the engine, then they read it', async () => {
     const { vehicle, revision } = await draft()
@@ -355,6 +374,19 @@ describe('bad input', () => {
     const read = (await crew.tuner.call(getLog, { params: { logId: log.id } })).body
     expect(read.state).toBe('rejected')
     expect(read.trouble).toMatch(words)
+  })
+
+  test('when the same log comes twice at once, then it is stored once', async () => {
+    const { vehicle } = await aVehicle(server, crew)
+    const upload = () =>
+      crew.tuner.call(uploadLog, {
+        params: { vehicleId: vehicle.id },
+        body: { title: '' },
+        file: { name: 'twin.csv', content: driveCsv() },
+      })
+    const answers = await Promise.all([upload(), upload()])
+    expect(answers.map(({ status }) => status).sort((a, b) => a - b)).toEqual([200, 409])
+    await server.drain()
   })
 
   test('when columns are not recognised, then they are asked for, and the answer is remembered for the next such log', async () => {

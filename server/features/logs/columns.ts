@@ -1,16 +1,14 @@
 /** Channels as they lie in the database: blocks of 65,536 samples, one row each, beside a coarse min/max level. */
-import type { ChannelName } from '../../../shared/contract/logs.ts'
-import type { Reader, Tx } from '../../platform/db/client.ts'
-import { logBlocks } from '../../platform/db/schema/logs.ts'
-import * as store from './store.ts'
+import type pg from 'pg'
+import { ChannelName } from '../../../shared/contract/logs.ts'
+import { Id } from '../../../shared/wire.ts'
+import { decodeBlock, encodeBlock } from '../../platform/columns/block-codec.ts'
+import { copyIn, copyOut, textBytes, uuidBytes, type CopyField } from '../../platform/columns/copy.ts'
 
 const blockSamples = 65_536
 const levelSamples = 64
 
 export type ChannelValues = Float32Array | Float64Array
-
-const bytesOf = (values: ChannelValues): Uint8Array =>
-  new Uint8Array(values.buffer, values.byteOffset, values.byteLength)
 
 /** Lowest and highest of every 64 samples, as pairs; NaN where a stretch holds no reading. */
 export function minMaxLevel(values: ChannelValues): Float32Array {
@@ -30,47 +28,56 @@ export function minMaxLevel(values: ChannelValues): Float32Array {
   return level
 }
 
-export async function writeChannels(
-  tx: Tx,
-  logId: string,
-  channels: ReadonlyMap<ChannelName, ChannelValues>,
-): Promise<void> {
+function* blocksOf(logId: string, channels: ReadonlyMap<ChannelName, ChannelValues>): Generator<CopyField[]> {
   for (const [channel, values] of channels) {
     for (let start = 0, block = 0; start < values.length; start += blockSamples, block += 1) {
       const part = values.subarray(start, start + blockSamples)
-      await tx.insert(logBlocks).values({
-        logId,
-        channel,
-        block,
-        samples: part.length,
-        data: bytesOf(part),
-        level: bytesOf(minMaxLevel(part)),
-      })
+      const level = minMaxLevel(part)
+      yield [uuidBytes(logId), textBytes(channel), block, part.length, encodeBlock(part), new Uint8Array(level.buffer)]
     }
   }
 }
 
-/** Reads channels whole; those the log lacks are absent from the answer. Time is double precision, the rest single. */
+/** @param client  in the transaction that also writes the log's state. */
+export const writeChannels = (
+  client: pg.PoolClient,
+  logId: string,
+  channels: ReadonlyMap<ChannelName, ChannelValues>,
+): Promise<void> =>
+  copyIn(client, 'log_blocks (log_id, channel, block, samples, data, level)', blocksOf(logId, channels))
+
+/** Reads channels whole; those the log lacks are absent from the answer. */
 export async function readChannels(
-  db: Reader,
+  pool: pg.Pool,
   logId: string,
   names: readonly ChannelName[],
 ): Promise<Map<ChannelName, Float64Array>> {
-  const parts = new Map<string, ChannelValues[]>()
-  for (const { channel, data } of await store.blocksOf(db, logId, names)) {
-    const buffer = data.slice().buffer
-    const values = channel === 'time' ? new Float64Array(buffer) : new Float32Array(buffer)
-    parts.set(channel, [...(parts.get(channel) ?? []), values])
+  // COPY takes no parameters, so both are parsed before they stand in the query.
+  const id = Id.parse(logId)
+  const list = names.map((name) => `'${ChannelName.parse(name)}'`).join(', ')
+  const client = await pool.connect()
+  try {
+    const rows = await copyOut(
+      client,
+      `select channel, data from log_blocks where log_id = '${id}' and channel in (${list}) order by channel, block`,
+    )
+    const parts = new Map<ChannelName, ChannelValues[]>()
+    for (const [name, data] of rows) {
+      const channel = ChannelName.parse(name!.toString('utf8'))
+      parts.set(channel, [...(parts.get(channel) ?? []), decodeBlock(data!)])
+    }
+    return new Map([...parts].map(([channel, blocks]) => [channel, joined(blocks)]))
+  } finally {
+    client.release()
   }
-  return new Map(
-    [...parts].map(([channel, list]) => {
-      const whole = new Float64Array(list.reduce((sum, part) => sum + part.length, 0))
-      let at = 0
-      for (const part of list) {
-        whole.set(part, at)
-        at += part.length
-      }
-      return [channel as ChannelName, whole]
-    }),
-  )
+}
+
+function joined(blocks: readonly ChannelValues[]): Float64Array {
+  const whole = new Float64Array(blocks.reduce((sum, block) => sum + block.length, 0))
+  let at = 0
+  for (const block of blocks) {
+    whole.set(block, at)
+    at += block.length
+  }
+  return whole
 }

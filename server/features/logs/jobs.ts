@@ -12,6 +12,7 @@ import type { LogColumns } from '../../core/csv/read-log.ts'
 import { channelHealth } from '../../core/channels/health.ts'
 import { missingChannels, recogniseColumns, toChannels } from '../../core/channels/recognise.ts'
 import type { Deps } from '../../deps.ts'
+import { openDb } from '../../platform/db/client.ts'
 import { logBlocks } from '../../platform/db/schema/logs.ts'
 import type { JobDefinition } from '../../platform/queue/run.ts'
 import { currentSheet } from '../vehicles/service.ts'
@@ -82,23 +83,42 @@ async function readLog(deps: Deps, logId: string, signal: AbortSignal): Promise<
     rateHz,
   })
   const lacking = missingChannels(mapping)
-  await deps.db.transaction(async (tx) => {
-    const faults = reading.faults.map(({ kind, count, examples }) => ({ kind, count, examples: [...examples] }))
-    const current = await store.updateAttempt(tx, logId, attempt, {
-      state: lacking.length === 0 ? 'ready' : 'needs-mapping',
-      trouble: lacking.length === 0 ? null : `No column was recognised as ${lacking.join(', ')}: say which it is.`,
-      progress: 1,
-      mapping,
-      health,
-      faults,
-      durationS,
-      rateHz,
-      readAt: deps.clock.now(),
-    })
-    if (!current) return
-    await tx.delete(logBlocks).where(eq(logBlocks.logId, logId))
-    await writeChannels(tx, logId, channels)
+  const faults = reading.faults.map(({ kind, count, examples }) => ({ kind, count, examples: [...examples] }))
+  await storeReading(deps, log, channels, {
+    state: lacking.length === 0 ? 'ready' : 'needs-mapping',
+    trouble: lacking.length === 0 ? null : `No column was recognised as ${lacking.join(', ')}: say which it is.`,
+    progress: 1,
+    mapping,
+    health,
+    faults,
+    durationS,
+    rateHz,
+    readAt: deps.clock.now(),
   })
+}
+
+/** State and blocks together or not at all, on one connection because COPY needs it; a stale attempt writes nothing. */
+async function storeReading(
+  deps: Deps,
+  log: store.LogRow,
+  channels: Parameters<typeof writeChannels>[2],
+  patch: Partial<store.LogRow>,
+): Promise<void> {
+  const client = await deps.pool.connect()
+  const db = openDb(client)
+  try {
+    await client.query('begin')
+    if (await store.updateAttempt(db, log.id, log.attempt, patch)) {
+      await db.delete(logBlocks).where(eq(logBlocks.logId, log.id))
+      await writeChannels(client, log.id, channels)
+    }
+    await client.query('commit')
+  } catch (error) {
+    await client.query('rollback')
+    throw error
+  } finally {
+    client.release()
+  }
 }
 
 export const logJobs: readonly JobDefinition[] = [

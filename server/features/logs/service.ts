@@ -165,7 +165,7 @@ export async function receiveLog(
       return toLine(await logInScope(tx, scope, row!.id))
     })
   } catch (error) {
-    if (isUniqueViolation(error, 'logs_vehicle_id_sha256_unique')) throw new Problem('log-duplicate')
+    if (isUniqueViolation(error, 'logs_vehicleId_sha256_unique')) throw new Problem('log-duplicate')
     throw error
   }
 }
@@ -300,7 +300,7 @@ export async function getTraces(deps: Deps, actor: Actor, logId: string, query: 
     const parsed = ChannelSchema.safeParse(name.trim())
     return parsed.success ? [parsed.data] : []
   })
-  const channels = await readChannels(deps.db, logId, ['time', ...names])
+  const channels = await readChannels(deps.pool, logId, ['time', ...names])
   const time = channels.get('time')
   if (!time) return []
   return names.flatMap((name) => {
@@ -358,12 +358,12 @@ const multiplier = (percent: Float64Array | undefined): Float64Array | undefined
   percent?.map((value) => 1 + value / 100)
 
 /** A log as the learner takes it: columns from the database, the table that was in the engine, the target in force. */
-export async function loadDrive(db: Reader, logId: string, target: Table): Promise<Drive> {
+export async function loadDrive({ db, pool }: Pick<Deps, 'db' | 'pool'>, logId: string, target: Table): Promise<Drive> {
   const row = await store.rowById(db, logId)
   const flashed = row?.flashedRevisionId ? await tableById(db, row.flashedRevisionId) : null
   if (!row || !flashed)
     throw new Problem('log-not-ready', { detail: 'Say which revision was in the engine when the log was recorded.' })
-  const c = await readChannels(db, logId, channelNames)
+  const c = await readChannels(pool, logId, channelNames)
   const need = (name: ChannelName): Float64Array => {
     const values = c.get(name)
     if (!values) throw new Problem('log-not-ready', { detail: `Log ${row.number} has no ${name}.` })

@@ -1,5 +1,5 @@
 /** The logs noun's SQL. */
-import { and, asc, desc, eq, inArray, max, sql } from 'drizzle-orm'
+import { and, desc, eq, max, sql } from 'drizzle-orm'
 import type { Reader, Tx } from '../../platform/db/client.ts'
 import { people } from '../../platform/db/schema/accounts.ts'
 import { logBlocks, logOriginals, logs, mappings } from '../../platform/db/schema/logs.ts'
@@ -88,13 +88,6 @@ export async function updateAttempt(
     .returning({ id: logs.id })
   return rows.length === 1
 }
-
-export const blocksOf = (db: Reader, logId: string, channels: readonly string[]) =>
-  db
-    .select({ channel: logBlocks.channel, samples: logBlocks.samples, data: logBlocks.data })
-    .from(logBlocks)
-    .where(and(eq(logBlocks.logId, logId), inArray(logBlocks.channel, [...channels])))
-    .orderBy(asc(logBlocks.channel), asc(logBlocks.block))
 
 export const channelsOf = (db: Reader, logId: string) =>
   db.selectDistinct({ channel: logBlocks.channel }).from(logBlocks).where(eq(logBlocks.logId, logId))

@@ -36,7 +36,7 @@ async function inputOf(deps: Deps, row: store.ProposalRow) {
   const sheet = await currentSheet(deps.db, row.vehicleId)
   if (!base || !target || !sheet) throw new Error(`the frozen inputs of proposal ${row.id} are gone`)
   const logs = await store.logsOf(deps.db, row.id)
-  const drives = await Promise.all(logs.map((log) => loadDrive(deps.db, log.id, target)))
+  const drives = await Promise.all(logs.map((log) => loadDrive(deps, log.id, target)))
   const stepCapPct = Number(row.settings['stepCapPct'] ?? 20)
   return { drives, engine: factsOf(sheet), grid: base.grid, current: base.values, settings: { stepCapPct } }
 }

@@ -16,7 +16,7 @@ export function openPool(url: string, onError: (error: Error) => void): pg.Pool 
   return pool
 }
 
-export const openDb = (pool: pg.Pool): Db => drizzle(pool, { schema, casing: 'snake_case' })
+export const openDb = (connection: pg.Pool | pg.PoolClient): Db => drizzle(connection, { schema, casing: 'snake_case' })
 
 /** True for the SQLSTATE of a unique violation, on the named constraint where one is given. */
 export function isUniqueViolation(error: unknown, constraint?: string): boolean {
