@@ -1,22 +1,10 @@
 /** A private PostgreSQL cluster in the data folder, on loopback, started when needed and stopped by whoever started it. */
 import { createHash, randomBytes } from 'node:crypto'
-import {
-  closeSync,
-  existsSync,
-  mkdirSync,
-  openSync,
-  readdirSync,
-  readFileSync,
-  renameSync,
-  rmSync,
-  statSync,
-  unlinkSync,
-  writeFileSync,
-  chownSync,
-} from 'node:fs'
+import { existsSync, mkdirSync, readdirSync, readFileSync, renameSync, rmSync, writeFileSync, chownSync } from 'node:fs'
 import { connect, createServer } from 'node:net'
 import { join } from 'node:path'
 import { isRoot, runQuietly, sleep, succeeds } from './commands.mjs'
+import { withLock } from './lock.mjs'
 import { installDebian } from './packages.mjs'
 
 const role = 'evenburn'
@@ -106,30 +94,6 @@ async function runningPort(bin, cluster) {
     await sleep(500)
   }
   throw new Error(`PostgreSQL in ${cluster} neither answers nor ends. See ${cluster}.log`)
-}
-
-/** Two first starts at once: one makes the cluster, the other waits. A lock left by a dead process is taken over. */
-async function withLock(path, work) {
-  for (let tries = 0; ; tries += 1) {
-    try {
-      closeSync(openSync(path, 'wx', 0o600))
-      writeFileSync(path, String(process.pid))
-      break
-    } catch (error) {
-      if (error.code !== 'EEXIST') throw error
-      const pid = Number(readFileSync(path, 'utf8') || 0)
-      const young = Date.now() - statSync(path).mtimeMs < 2000
-      if (!young && !(pid > 0 && existsSync(`/proc/${pid}`))) unlinkSync(path)
-      else if (tries > 240)
-        throw new Error(`Another start has been busy for two minutes. If there is none, remove ${path}.`)
-      await sleep(500)
-    }
-  }
-  try {
-    return await work()
-  } finally {
-    rmSync(path, { force: true })
-  }
 }
 
 function makeCluster(bin, cluster, password) {

@@ -3,6 +3,7 @@ import { randomBytes } from 'node:crypto'
 import { existsSync, mkdirSync, readFileSync, writeFileSync } from 'node:fs'
 import { dirname, join, resolve } from 'node:path'
 import { fileURLToPath } from 'node:url'
+import { withLock } from './lock.mjs'
 import { installPackages } from './packages.mjs'
 import { ensurePostgres, newPassword } from './postgres.mjs'
 
@@ -30,7 +31,7 @@ export async function prepare() {
   if (major < 20 || (major === 20 && minor < 19))
     throw new Error(`Node.js 20.19 or newer is needed; this is ${process.versions.node}.`)
   mkdirSync(dataDir, { recursive: true, mode: 0o755 })
-  installPackages(root)
+  await withLock(join(dataDir, 'packages.lock'), async () => installPackages(root))
   const { session, postgres } = secrets()
   const outside = process.env['DATABASE_URL']
   const server = outside ? { url: outside, startedHere: false, stop() {} } : await ensurePostgres(dataDir, postgres)

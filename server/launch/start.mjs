@@ -4,6 +4,7 @@ import { join } from 'node:path'
 import { buildClient } from './build.mjs'
 import { keepRunning, waitUntilReady } from './children.mjs'
 import { runQuietly } from './commands.mjs'
+import { withLock } from './lock.mjs'
 import { dataDir, ensureDatabase, prepare, root } from './setup.mjs'
 
 const dev = process.argv.includes('--dev')
@@ -48,12 +49,14 @@ async function main() {
     LOG_LEVEL: process.env['LOG_LEVEL'] ?? 'warn',
   }
   const tsx = ['--import', 'tsx']
-  runQuietly(process.execPath, [...tsx, 'server/migrate.ts'], { cwd: root, env })
-  if (demo === '1') {
-    if (!existsSync(join(dataDir, 'demo.json'))) console.log('Making the demo workshop…')
-    runQuietly(process.execPath, [...tsx, 'server/seed.ts'], { cwd: root, env })
-  }
-  if (!dev) buildClient(root)
+  await withLock(join(dataDir, 'start.lock'), async () => {
+    runQuietly(process.execPath, [...tsx, 'server/migrate.ts'], { cwd: root, env })
+    if (demo === '1') {
+      if (!existsSync(join(dataDir, 'demo.json'))) console.log('Making the demo workshop…')
+      runQuietly(process.execPath, [...tsx, 'server/seed.ts'], { cwd: root, env })
+    }
+    if (!dev) buildClient(root)
+  })
   if (stopping) return
   const watch = dev ? [...tsx, '--watch'] : tsx
   const list = [
