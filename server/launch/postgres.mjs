@@ -1,6 +1,6 @@
 /** A private PostgreSQL cluster in the data folder, on loopback, started when needed and stopped by whoever started it. */
 import { createHash, randomBytes } from 'node:crypto'
-import { existsSync, mkdirSync, readdirSync, readFileSync, renameSync, rmSync, writeFileSync, chownSync } from 'node:fs'
+import { existsSync, mkdirSync, readdirSync, renameSync, rmSync, writeFileSync, chownSync } from 'node:fs'
 import { connect, createServer } from 'node:net'
 import { join } from 'node:path'
 import { isRoot, runQuietly, sleep, succeeds } from './commands.mjs'
