@@ -3,6 +3,7 @@ import { spawn } from 'node:child_process'
 import { sleep } from './commands.mjs'
 
 const stopWithinMs = 10_000
+const follow = ['--import', new URL('./follow-launcher.mjs', import.meta.url).href]
 
 export function keepRunning(list, options) {
   const running = new Map()
@@ -10,7 +11,7 @@ export function keepRunning(list, options) {
 
   const begin = ({ name, args }, fails = 0) => {
     const began = Date.now()
-    const child = spawn(process.execPath, args, { ...options, stdio: ['ignore', 'inherit', 'inherit'] })
+    const child = spawn(process.execPath, [...follow, ...args], { ...options, stdio: ['ignore', 'inherit', 'inherit'] })
     running.set(name, child)
     child.on('exit', (code, signal) => {
       running.delete(name)
@@ -35,7 +36,7 @@ export function keepRunning(list, options) {
 
 export async function waitUntilReady(url, withinMs = 60_000) {
   for (let waited = 0; waited < withinMs; waited += 200) {
-    const ok = await fetch(url).then(
+    const ok = await fetch(url, { signal: AbortSignal.timeout(2000) }).then(
       (answer) => answer.ok,
       () => false,
     )

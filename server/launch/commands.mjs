@@ -14,12 +14,30 @@ export function runQuietly(command, args, options = {}) {
 export const succeeds = (command, args, options = {}) =>
   spawnSync(command, args, { stdio: 'ignore', ...options }).status === 0
 
+const shown = new Set()
+let ending = false
+
+/** Ends what `runShown` has begun, waits for it, and lets it begin nothing more. */
+export async function endPrograms() {
+  ending = true
+  for (const child of shown) child.kill('SIGTERM')
+  for (let waited = 0; shown.size > 0 && waited < 5000; waited += 100) await sleep(100)
+}
+
 /** Runs to the end with its output shown; resolves with its exit code. */
 export function runShown(command, args, options = {}) {
+  if (ending) return Promise.reject(new Error('Interrupted.'))
   return new Promise((resolve, reject) => {
     const child = spawn(command, args, { stdio: 'inherit', ...options })
-    child.on('error', reject)
-    child.on('exit', (code, signal) => resolve(signal ? 1 : (code ?? 1)))
+    shown.add(child)
+    child.on('error', (error) => {
+      shown.delete(child)
+      reject(error)
+    })
+    child.on('exit', (code, signal) => {
+      shown.delete(child)
+      resolve(signal ? 1 : (code ?? 1))
+    })
   })
 }
 

@@ -10,32 +10,30 @@ import { ensurePostgres, newPassword } from './postgres.mjs'
 export const root = resolve(dirname(fileURLToPath(import.meta.url)), '..', '..')
 export const dataDir = resolve(process.env['EVENBURN_DATA'] ?? join(root, '.data'))
 
-/** Made at the first start, kept readable by their owner alone. */
+/** Made at the first start, kept readable by their owner alone. Call it under a lock: two first starts must agree. */
 function secrets() {
   const path = join(dataDir, 'secrets.json')
   if (existsSync(path)) return JSON.parse(readFileSync(path, 'utf8'))
   const made = { session: randomBytes(48).toString('base64url'), postgres: newPassword() }
-  try {
-    writeFileSync(path, JSON.stringify(made), { mode: 0o600, flag: 'wx' })
-    return made
-  } catch (error) {
-    // Another first start was quicker: its secrets are the secrets.
-    if (error.code === 'EEXIST') return JSON.parse(readFileSync(path, 'utf8'))
-    throw error
-  }
+  writeFileSync(path, JSON.stringify(made), { mode: 0o600 })
+  return made
 }
 
-/** @returns the server's admin URL and the environment that our processes share. */
-export async function prepare() {
+/**
+ * @param outside  URL of a server elsewhere; without one the private cluster is used.
+ * @returns the server's admin URL, how to leave it, and the secret that our processes share.
+ */
+export async function prepare(outside) {
   const [major, minor] = process.versions.node.split('.').map(Number)
   if (major < 20 || (major === 20 && minor < 19))
     throw new Error(`Node.js 20.19 or newer is needed; this is ${process.versions.node}.`)
   mkdirSync(dataDir, { recursive: true, mode: 0o755 })
-  await withLock(join(dataDir, 'packages.lock'), async () => installPackages(root))
-  const { session, postgres } = secrets()
-  const outside = process.env['DATABASE_URL']
-  const server = outside ? { url: outside, startedHere: false, stop() {} } : await ensurePostgres(dataDir, postgres)
-  return { server, outside: outside !== undefined, sessionSecret: process.env['SESSION_SECRET'] ?? session }
+  const { session, postgres } = await withLock(join(dataDir, 'packages.lock'), () => {
+    installPackages(root)
+    return secrets()
+  })
+  const server = outside ? { url: outside, stop: async () => {} } : await ensurePostgres(dataDir, postgres)
+  return { server, sessionSecret: process.env['SESSION_SECRET'] ?? session }
 }
 
 /** The same server's URL with another database. */

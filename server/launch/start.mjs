@@ -3,8 +3,9 @@ import { existsSync, readFileSync } from 'node:fs'
 import { join } from 'node:path'
 import { buildClient } from './build.mjs'
 import { keepRunning, waitUntilReady } from './children.mjs'
-import { runQuietly } from './commands.mjs'
+import { runQuietly, sleep } from './commands.mjs'
 import { withLock } from './lock.mjs'
+import { isFree } from './ports.mjs'
 import { dataDir, ensureDatabase, prepare, root } from './setup.mjs'
 
 const dev = process.argv.includes('--dev')
@@ -31,9 +32,51 @@ function printSignIns() {
     console.log(`  ${role.padEnd(9)} ${email.padEnd(24)} ${password}`)
 }
 
+/** The processes of a launcher killed a moment ago need a few seconds to end. */
+async function becomesFree(each) {
+  for (let waited = 0; waited < 5000; waited += 250) {
+    if (await isFree(each, process.env['HOST'] ?? '127.0.0.1')) return true
+    await sleep(250)
+  }
+  return false
+}
+
+/** Else another program's answer would be taken for ours, while our own web process dies and is begun again. */
+async function portsMustBeFree() {
+  for (const each of new Set([port, webPort])) {
+    if (await becomesFree(Number(each))) continue
+    throw new Error(
+      `Port ${each} is taken: by another program, or by Evenburn already running. To choose another: PORT=4200 npm start`,
+    )
+  }
+}
+
+function programs() {
+  const tsx = ['--import', 'tsx']
+  const watch = dev ? [...tsx, '--watch'] : tsx
+  const list = [
+    { name: 'web', args: [...watch, 'server/main.ts'] },
+    { name: 'worker', args: [...watch, 'server/worker.ts'] },
+  ]
+  if (dev) list.push({ name: 'vite', args: ['node_modules/vite/bin/vite.js', '--port', port, '--strictPort'] })
+  return list
+}
+
+function bringUpToDate(env, demo) {
+  const tsx = ['--import', 'tsx']
+  runQuietly(process.execPath, [...tsx, 'server/migrate.ts'], { cwd: root, env })
+  if (demo === '1') {
+    if (!existsSync(join(dataDir, 'demo.json'))) console.log('Making the demo workshop…')
+    runQuietly(process.execPath, [...tsx, 'server/seed.ts'], { cwd: root, env })
+  }
+  if (!dev) buildClient(root)
+}
+
 async function main() {
-  const { server, outside, sessionSecret } = await prepare()
-  stopAll = async () => server.stop()
+  await portsMustBeFree()
+  const outside = process.env['DATABASE_URL']
+  const { server, sessionSecret } = await prepare(outside)
+  stopAll = () => server.stop()
   const url = outside ? server.url : await ensureDatabase(server.url, 'evenburn')
   const demo = process.env['EVENBURN_DEMO'] ?? (outside ? '0' : '1')
   const address = `http://localhost:${port}`
@@ -48,31 +91,20 @@ async function main() {
     PUBLIC_URL: process.env['PUBLIC_URL'] ?? address,
     LOG_LEVEL: process.env['LOG_LEVEL'] ?? 'warn',
   }
-  const tsx = ['--import', 'tsx']
+  // Held until the port is ours, so that a second start sees that it is taken.
   await withLock(join(dataDir, 'start.lock'), async () => {
-    runQuietly(process.execPath, [...tsx, 'server/migrate.ts'], { cwd: root, env })
-    if (demo === '1') {
-      if (!existsSync(join(dataDir, 'demo.json'))) console.log('Making the demo workshop…')
-      runQuietly(process.execPath, [...tsx, 'server/seed.ts'], { cwd: root, env })
+    bringUpToDate(env, demo)
+    await portsMustBeFree()
+    const children = keepRunning(programs(), {
+      cwd: root,
+      env: dev ? { ...env, EVENBURN_API: `http://127.0.0.1:${webPort}` } : env,
+    })
+    stopAll = async () => {
+      await children.stop()
+      await server.stop()
     }
-    if (!dev) buildClient(root)
+    await waitUntilReady(`http://127.0.0.1:${webPort}/api/health`)
   })
-  if (stopping) return
-  const watch = dev ? [...tsx, '--watch'] : tsx
-  const list = [
-    { name: 'web', args: [...watch, 'server/main.ts'] },
-    { name: 'worker', args: [...watch, 'server/worker.ts'] },
-  ]
-  if (dev) list.push({ name: 'vite', args: ['node_modules/vite/bin/vite.js', '--port', port, '--strictPort'] })
-  const children = keepRunning(list, {
-    cwd: root,
-    env: dev ? { ...env, EVENBURN_API: `http://127.0.0.1:${webPort}` } : env,
-  })
-  stopAll = async () => {
-    await children.stop()
-    server.stop()
-  }
-  await waitUntilReady(`http://127.0.0.1:${webPort}/api/health`)
   console.log(`\nEvenburn is ready: ${address}`)
   if (demo === '1') printSignIns()
   else console.log('The first visit makes the workshop and its admin.')

@@ -3,8 +3,9 @@ import { existsSync, readFileSync, rmSync } from 'node:fs'
 import { join } from 'node:path'
 import { buildClient } from './build.mjs'
 import { keepRunning, waitUntilReady } from './children.mjs'
-import { runQuietly, runShown } from './commands.mjs'
+import { endPrograms, runQuietly, runShown } from './commands.mjs'
 import { ensureChromium } from './packages.mjs'
+import { kernelPort } from './ports.mjs'
 import { dataDir, ensureDatabase, prepare, root } from './setup.mjs'
 
 const bin = (name) => join(root, 'node_modules', '.bin', name)
@@ -41,22 +42,12 @@ async function vitest(env) {
   if (code !== 0 && found.numFailedTests === 0) count(0, 1)
 }
 
-const freePort = async () => {
-  const { createServer } = await import('node:net')
-  return new Promise((resolve) => {
-    const server = createServer().listen(0, '127.0.0.1', () => {
-      const { port } = server.address()
-      server.close(() => resolve(port))
-    })
-  })
-}
-
 /** A product of its own for the browser: fresh database, seeded demo, web and worker processes. */
 async function browser(adminUrl, baseEnv) {
   console.log('\n== Browser tests')
   const chromium = ensureChromium()
   buildClient(root)
-  const port = await freePort()
+  const port = await kernelPort()
   const home = join(dataDir, 'e2e')
   rmSync(home, { recursive: true, force: true })
   const env = {
@@ -83,9 +74,10 @@ async function browser(adminUrl, baseEnv) {
   )
   const report = join(dataDir, 'playwright.json')
   rmSync(report, { force: true })
+  let code = 1
   try {
     await waitUntilReady(`http://127.0.0.1:${port}/api/health`)
-    await runShown(bin('playwright'), ['test'], {
+    code = await runShown(bin('playwright'), ['test'], {
       cwd: root,
       env: { ...env, CHROMIUM: chromium, E2E_URL: env.PUBLIC_URL, PLAYWRIGHT_JSON_OUTPUT_NAME: report },
     })
@@ -95,12 +87,23 @@ async function browser(adminUrl, baseEnv) {
   const stats = readReport(report)?.stats
   if (!stats || stats.expected + stats.unexpected === 0) return count(0, 1)
   count(stats.expected + stats.flaky, stats.unexpected + stats.skipped)
+  if (code !== 0 && stats.unexpected + stats.skipped === 0) count(0, 1)
 }
+
+/** What a shell has set for a product in use must not reach the tests: no server, mail or folder of it. */
+function testEnvironment(adminUrl) {
+  const env = { ...process.env, TEST_DATABASE_URL: adminUrl }
+  for (const name of ['NODE_ENV', 'DATABASE_URL', 'SMTP_URL', 'HOST', 'QUOTA_MB', 'UPLOAD_MAX_MB']) delete env[name]
+  return env
+}
+
+let leave = async () => {}
+let stopped = false
 
 async function main() {
   const { server } = await prepare()
-  const env = { ...process.env, TEST_DATABASE_URL: server.url }
-  delete env['NODE_ENV']
+  leave = () => server.stop()
+  const env = testEnvironment(server.url)
   try {
     await check('Lint', bin('oxlint'), ['--type-aware', '--deny-warnings'])
     await check('Format', bin('prettier'), ['--check', '--log-level', 'warn', '.'])
@@ -109,15 +112,28 @@ async function main() {
     await check('Types of the core, without Node or DOM', bin('tsc'), ['--noEmit', '-p', 'server/core'])
     await vitest(env)
     if (process.env['SKIP_E2E'] === '1') console.log('\nBrowser tests were left out: SKIP_E2E=1')
-    else await browser(server.url, process.env)
+    else await browser(server.url, env)
   } finally {
-    server.stop()
+    if (!stopped) await leave()
   }
 }
+
+/** Interrupted: what we began ends with us (each program follows its launcher), and the verdict is a failure. */
+async function interrupted() {
+  if (stopped) return
+  stopped = true
+  await endPrograms()
+  await leave()
+  console.log(`\nInterrupted.\n\n${totals.passed} passed, ${totals.failed + 1} failed`)
+  process.exit(1)
+}
+for (const signal of ['SIGINT', 'SIGTERM', 'SIGHUP']) process.on(signal, () => void interrupted())
 
 await main().catch((error) => {
   console.error(error.message)
   count(0, 1)
 })
-console.log(`\n${totals.passed} passed, ${totals.failed} failed`)
-process.exit(totals.failed > 0 || totals.passed === 0 ? 1 : 0)
+if (!stopped) {
+  console.log(`\n${totals.passed} passed, ${totals.failed} failed`)
+  process.exit(totals.failed > 0 || totals.passed === 0 ? 1 : 0)
+}
