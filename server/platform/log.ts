@@ -11,7 +11,7 @@ interface LoggedError {
   readonly cause?: LoggedError
 }
 
-/** What a log says of an error. A driver hangs its whole client on one, password and keys included, so only these go. */
+/** What a log says of an error. A driver hangs its whole client on one, with the key that cancels its queries, so only these go. */
 export function describeError(error: unknown): LoggedError {
   if (!(error instanceof Error)) return { type: typeof error, message: String(error) }
   const code = 'code' in error && typeof error.code === 'string' ? error.code : undefined
