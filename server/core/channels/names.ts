@@ -1,125 +1,117 @@
 /** What a column is called: the standards' terms (SAE J1930, from memory), their abbreviations and common spellings. */
 import type { ChannelName } from '../../../shared/contract/logs.ts'
 
-/** Names in lower case with everything but letters and digits taken out. */
-const names: Readonly<Record<ChannelName, readonly string[]>> = {
-  time: ['time', 'timestamp', 'zeit', 'temps', 'tiempo', 'elapsedtime', 'seconds', 'sec', 't', 'times', 'timems'],
-  rpm: [
-    'rpm',
-    'enginespeed',
-    'enginerpm',
-    'speedengine',
-    'drehzahl',
-    'motordrehzahl',
-    'regime',
-    'regimemoteur',
-    'revoluciones',
-    'umin',
-    'rev',
-  ],
-  map: [
-    'map',
-    'manifoldpressure',
-    'manifoldabsolutepressure',
-    'intakemanifoldpressure',
-    'intakepressure',
-    'saugrohrdruck',
-    'pressionadmission',
-    'presionadmision',
-    'mapkpa',
-    'boost',
-    'boostpressure',
-  ],
-  lambda: [
-    'lambda',
-    'afr',
-    'airfuelratio',
-    'wideband',
-    'o2',
-    'lambda1',
-    'afr1',
-    'measuredlambda',
-    'measuredafr',
-    'lambdameasured',
-    'widebandlambda',
-    'widebandafr',
-    'equivalenceratio',
-    'phi',
-  ],
-  targetLambda: [
-    'targetlambda',
-    'lambdatarget',
-    'targetafr',
-    'afrtarget',
-    'commandedlambda',
-    'desiredlambda',
-    'solllambda',
-    'lambdasoll',
-  ],
-  ect: [
-    'ect',
-    'clt',
-    'coolant',
-    'coolanttemperature',
-    'enginecoolanttemperature',
-    'coolanttemp',
-    'watertemp',
-    'kuehlmitteltemperatur',
-    'kühlmitteltemperatur',
-    'temperatureeau',
-    'eautemperature',
-    'cltf',
-    'cltc',
-    'ectf',
-    'ectc',
-  ],
-  iat: [
-    'iat',
-    'intakeairtemperature',
-    'intakeairtemp',
-    'airtemp',
-    'airtemperature',
-    'intaketemp',
-    'chargetemperature',
-    'ansauglufttemperatur',
-    'temperatureair',
-    'mat',
-    'iatc',
-    'iatf',
-  ],
-  tp: ['tp', 'tps', 'throttle', 'throttleposition', 'throttleangle', 'drosselklappe', 'papillon', 'mariposa', 'tppct'],
-  trim: [
-    'trim',
-    'closedlooptrim',
-    'shorttermfueltrim',
-    'stft',
-    'fueltrim',
-    'lambdacorrection',
-    'egocorrection',
-    'closedloopcorrection',
-  ],
-  warmup: ['warmup', 'warmupenrichment', 'warmupcorrection', 'warmlauf'],
-  afterStart: ['afterstart', 'afterstartenrichment'],
-  accel: ['acceleration', 'accelerationenrichment', 'accelenrichment', 'transientfuel'],
-  pulseWidth: [
-    'pulsewidth',
-    'injectorpulsewidth',
-    'pw',
-    'injectiontime',
-    'einspritzzeit',
-    'tempsinjection',
-    'ipw',
-    'pw1',
-  ],
-  battery: ['battery', 'batteryvoltage', 'vbat', 'batt', 'voltage', 'systemvoltage', 'batterie'],
-  baro: ['baro', 'barometricpressure', 'barometer', 'ambientpressure', 'atmosphericpressure', 'umgebungsdruck'],
+/** Lower case letters and digits, accents off: "Température d’eau" and "temperature deau" are one name. */
+const fold = (title: string): string =>
+  title
+    .normalize('NFD')
+    .replace(/\p{M}/gu, '')
+    .toLowerCase()
+    .replace(/[^\p{L}\p{N}]/gu, '')
+
+/** Names as `fold` leaves them, by channel. */
+const names: Readonly<Record<ChannelName, string>> = {
+  time: `
+    time timestamp zeit temps tiempo elapsedtime seconds sec t times timems uhrzeit zeitstempel horodatage tiempos
+    timesec logtime elapsed laufzeit
+  `,
+  rpm: `
+    rpm enginespeed enginerpm speedengine drehzahl motordrehzahl regime regimemoteur revoluciones umin rev
+    vitessemoteur regimenmotor regimen tourminute trmin revolutions enginespeedrpm rpms velocidadmotor
+  `,
+  map: `
+    map manifoldpressure manifoldabsolutepressure intakemanifoldpressure intakepressure saugrohrdruck
+    pressionadmission presionadmision mapkpa boost boostpressure intakemanifoldabsolutepressure
+    intakemanifoldabspressure manifoldabspressure manifoldabsolute manifoldpress ladedruck pressioncollecteur
+    pressiondadmission presioncolector presiondeadmision absolutepressure
+  `,
+  lambda: `
+    lambda afr airfuelratio wideband o2 lambda1 afr1 measuredlambda measuredafr lambdameasured widebandlambda
+    widebandafr equivalenceratio phi lambdasensor lambdavalue lambdaist o2sensor oxygensensor heatedoxygensensor
+    lambdasonde sondelambda widebando2 airfuel airfuelratiomeasured uego wbo2 rapportairessence
+    relacionairecombustible
+  `,
+  targetLambda: `
+    targetlambda lambdatarget targetafr afrtarget commandedlambda desiredlambda solllambda lambdasoll lambdacible
+    consignelambda lambdaobjetivo airfuelratiotarget targetairfuelratio airfueltarget commandedafr desiredafr
+    lambdasetpoint lambdacommand requestedlambda
+  `,
+  ect: `
+    ect clt coolant coolanttemperature enginecoolanttemperature coolanttemp watertemp kuehlmitteltemperatur
+    temperatureeau eautemperature cltf cltc ectf ectc cts coolanttempc watertemperature enginetemp enginetemperature
+    kuhlmitteltemperatur kuhlwassertemperatur kuehlwassertemperatur kuhlmitteltemp temperaturemoteur
+    temperatureliquide temperaturadelrefrigerante temperaturarefrigerante temperaturamotor temperaturaagua
+    motortemperatur wassertemperatur
+  `,
+  iat: `
+    iat intakeairtemperature intakeairtemp airtemp airtemperature intaketemp chargetemperature ansauglufttemperatur
+    temperatureair mat iatc iatf inletairtemperature inletairtemp inlettemp manifoldairtemp manifoldairtemperature
+    aircharge airchargetemperature ansaugtemperatur lufttemperatur temperaturedair temperatureairadmission
+    temperaturaaire temperaturaadmision temperaturadeaire
+  `,
+  tp: `
+    tp tps throttle throttleposition throttleangle drosselklappe papillon mariposa tppct throttlepos throttlepercent
+    throttlepositionsensor absolutethrottleposition throttlevalve drosselklappenstellung drosselklappenwinkel
+    drosselklappenposition positionpapillon ouverturepapillon posicionmariposa tpspct
+  `,
+  trim: `
+    trim closedlooptrim shorttermfueltrim stft fueltrim lambdacorrection egocorrection closedloopcorrection
+    shortfueltrim shorttermtrim egocor egocorr lambdatrim o2correction o2trim gego lambdaregler correctionlambda
+    correccionlambda
+  `,
+  warmup: `
+    warmup warmupenrichment warmupcorrection warmlauf warmupenrich wue warmupfuel coldenrichment
+    warmlaufanreicherung enrichissementchauffe calentamiento
+  `,
+  afterStart: `
+    afterstart afterstartenrichment ase afterstartenrich afterstartcorrection poststart nachstart
+    nachstartanreicherung apresdemarrage postarranque
+  `,
+  accel: `
+    acceleration accelerationenrichment accelenrichment transientfuel accelcorrection accelenrich
+    acceleratorenrichment beschleunigungsanreicherung enrichissementacceleration transientcorrection
+  `,
+  pulseWidth: `
+    pulsewidth injectorpulsewidth pw injectiontime einspritzzeit tempsinjection ipw pw1 injectorpw injpw
+    injectorpulse injectorontime fuelpulsewidth injectionduration einspritzdauer tempsdinjection dureeinjection
+    tiempoinyeccion tiempodeinyeccion pulsewidth1 injectortime
+  `,
+  battery: `
+    battery batteryvoltage vbat batt voltage systemvoltage batterie batteryvolts battvoltage battv batv vbatt
+    bordspannung batteriespannung tensionbatterie voltajebateria tensionbateria bateria supplyvoltage
+  `,
+  baro: `
+    baro barometricpressure barometer ambientpressure atmosphericpressure umgebungsdruck barometricabsolutepressure
+    baropressure barometric atmospheric luftdruck pressionatmospherique pressionbarometrique presionatmosferica
+    presionbarometrica
+  `,
 }
 
 const byName = new Map<string, ChannelName>(
-  Object.entries(names).flatMap(([channel, list]) => list.map((name) => [name, channel as ChannelName] as const)),
+  Object.entries(names).flatMap(([channel, list]) =>
+    list
+      .trim()
+      .split(/\s+/)
+      .map((name) => [name, channel as ChannelName] as const),
+  ),
 )
 
-const fold = (title: string): string => title.toLowerCase().replace(/[^\p{L}\p{N}]/gu, '')
+/** The channel a title names, or null; of numbered sensors the first counts. */
+export function recogniseName(title: string): ChannelName | null {
+  const folded = fold(title)
+  return byName.get(folded) ?? byName.get(folded.replace(/1$/, '')) ?? null
+}
 
-/** The channel a title names, or null. */
-export const recogniseName = (title: string): ChannelName | null => byName.get(fold(title)) ?? null
+/** Names that leave open what is in the column: only a written unit can say. */
+const openNames = new Set([
+  'o2',
+  'o2sensor',
+  'oxygensensor',
+  'heatedoxygensensor',
+  'sondelambda',
+  'lambdasonde',
+  'equivalenceratio',
+])
+export const isOpenName = (title: string): boolean => openNames.has(fold(title).replace(/1$/, ''))
+
+export const namesBoost = (title: string): boolean => /^(boost|ladedruck)/.test(fold(title))

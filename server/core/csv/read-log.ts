@@ -1,7 +1,8 @@
 /** The door of the log reader: chunks of bytes in, columns of numbers and counted faults out. */
 import { recogniseName } from '../channels/names.ts'
+import { encodingOf, utf16Reader } from './encoding.ts'
 import { readHead, type Dialect, type Refusal } from './head.ts'
-import { Column, endOfLastLine, scanLines } from './scan.ts'
+import { emptyBody, endOfLastLine, scanLines, type Body } from './scan.ts'
 
 export interface Fault {
   readonly kind: 'ragged row' | 'unreadable field' | 'cut last line'
@@ -28,6 +29,7 @@ export interface LogReader {
 }
 
 const headBytes = 65_536
+const sniffBytes = 400
 const exampleCount = 5
 
 function joined(a: Uint8Array, b: Uint8Array): Uint8Array {
@@ -46,26 +48,52 @@ function offsetOfLine(bytes: Uint8Array, lines: number): number {
   return at
 }
 
-/** Streams a log in; memory is that of the columns and one chunk. Quoted fields may not span lines. */
-export function createLogReader(): LogReader {
+type Note = (kind: Fault['kind'], line: number, text: string) => void
+
+/** Counts faults by kind and keeps the first few of each as examples. */
+function faultBook(): { note: Note; take: (kind: Fault['kind'], line: number) => void; all: () => Fault[] } {
   const faults = new Map<Fault['kind'], Fault>()
+  return {
+    note(kind, line, text) {
+      const fault = faults.get(kind) ?? { kind, count: 0, examples: [] }
+      fault.count += 1
+      if (fault.examples.length < exampleCount) fault.examples.push({ line, text })
+      faults.set(kind, fault)
+    },
+    take(kind, line) {
+      const fault = faults.get(kind)
+      if (!fault) return
+      fault.count -= 1
+      if (fault.examples.at(-1)?.line === line) fault.examples.pop()
+      if (fault.count === 0) faults.delete(kind)
+    },
+    all: () => [...faults.values()],
+  }
+}
+
+/**
+ * Streams a log in: UTF-8, Latin-1 or UTF-16, any of four marks between fields, either decimal mark. Memory is that of
+ * the columns and one chunk. Quoted fields may not span lines.
+ */
+export function createLogReader(): LogReader {
+  const faults = faultBook()
+  let toBytes: ((chunk: Uint8Array) => Uint8Array) | null = null
   let pending: Uint8Array = new Uint8Array(0)
   let dialect: Dialect | null = null
-  let columns: Column[] = []
+  let body: Body = emptyBody([], [])
   let line = 1
-
-  const note = (kind: Fault['kind'], at: number, text: string) => {
-    const fault = faults.get(kind) ?? { kind, count: 0, examples: [] }
-    fault.count += 1
-    if (fault.examples.length < exampleCount) fault.examples.push({ line: at, text })
-    faults.set(kind, fault)
-  }
+  let lastShort = 0
 
   const scan = (bytes: Uint8Array) => {
     if (!dialect) return
-    line += scanLines(bytes, columns, dialect.delimiter.charCodeAt(0), dialect.decimalComma, line, {
-      ragged: (at, fields) => note('ragged row', at, `${fields} fields where the header has ${columns.length}`),
-      unreadable: (at, text) => note('unreadable field', at, text),
+    const marks = { ...dialect, delimiter: dialect.delimiter.charCodeAt(0) }
+    const width = body.columns.length
+    line += scanLines(bytes, body, marks, line, {
+      ragged(at, fields) {
+        if (fields < width) lastShort = at
+        faults.note('ragged row', at, `${fields} fields where the header has ${width}`)
+      },
+      unreadable: (at, text) => faults.note('unreadable field', at, text),
     })
   }
 
@@ -73,15 +101,39 @@ export function createLogReader(): LogReader {
     const head = readHead(pending.subarray(0, headBytes), whole && pending.length <= headBytes)
     if ('ok' in head) return head
     dialect = head
-    columns = head.header.map((name) => new Column(recogniseName(name) === 'time'))
+    body = emptyBody(
+      head.header.map((name) => recogniseName(name) === 'time'),
+      head.words,
+    )
     pending = pending.subarray(offsetOfLine(pending, head.skipLines))
     line = head.skipLines + 1
     return null
   }
 
+  const take = (chunk: Uint8Array): Uint8Array => {
+    if (!toBytes) {
+      // The first bytes tell the encoding; fewer than a handful wait.
+      const start = joined(pending, chunk)
+      if (start.length < sniffBytes) {
+        pending = start
+        return new Uint8Array(0)
+      }
+      pending = new Uint8Array(0)
+      return decided(start)
+    }
+    return toBytes(chunk)
+  }
+  const decided = (start: Uint8Array): Uint8Array => {
+    const encoding = encodingOf(start)
+    toBytes = encoding === 'bytes' ? (chunk) => chunk : utf16Reader(encoding === 'utf-16le')
+    return toBytes(start)
+  }
+
   return {
     push(chunk) {
-      pending = pending.length === 0 ? chunk : joined(pending, chunk)
+      const bytes = take(chunk)
+      if (!toBytes) return null
+      pending = pending.length === 0 ? bytes : joined(pending, bytes)
       if (!dialect) {
         if (pending.length < headBytes) return null
         const refusal = begin(false)
@@ -93,28 +145,28 @@ export function createLogReader(): LogReader {
       return null
     },
     end() {
+      if (!toBytes) pending = decided(pending)
       if (!dialect) {
         const refusal = begin(true)
         if (refusal) return refusal
       }
       const cut = pending.length > 0 && endOfLastLine(pending) < pending.length
-      const before = columns[0]?.length ?? 0
       scan(pending)
-      const ragged = faults.get('ragged row')
       // A last line without its end and with too few fields was cut off by the logger: it is left out.
-      if (cut && ragged && ragged.examples.at(-1)?.line === line - 1 && (columns[0]?.length ?? 0) > before) {
-        for (const column of columns) column.length -= 1
-        note('cut last line', line - 1, 'the file ends in the middle of a line')
+      if (cut && lastShort === line - 1) {
+        body.rows -= 1
+        faults.take('ragged row', lastShort)
+        faults.note('cut last line', lastShort, 'the file ends in the middle of a line')
       }
-      const rows = columns[0]?.length ?? 0
+      const { rows } = body
       if (rows === 0) return { ok: false, reason: 'no-rows', detail: 'The file has a header and no row of numbers.' }
       return {
         ok: true,
         header: dialect!.header,
         units: dialect!.units,
         rows,
-        columns: columns.map((column) => column.values.slice(0, rows)),
-        faults: [...faults.values()],
+        columns: body.columns.map((column) => column.slice(0, rows)),
+        faults: faults.all(),
       }
     },
   }

@@ -1,7 +1,9 @@
 /** The body of a log: bytes to columns of numbers without making strings, except where a field is no plain number. */
+import { missing, slowNumber } from './field.ts'
 
 const LF = 10
 const CR = 13
+const SPACE = 32
 const QUOTE = 34
 const PLUS = 43
 const MINUS = 45
@@ -18,62 +20,54 @@ export interface ScanFaults {
   readonly unreadable: (line: number, text: string) => void
 }
 
-/** A column that grows by doubling; time keeps all its digits, channels are single precision. */
-export class Column {
-  values: Float32Array | Float64Array
-  length = 0
-  constructor(wide: boolean) {
-    this.values = wide ? new Float64Array(4096) : new Float32Array(4096)
-  }
-  push(value: number): void {
-    if (this.length === this.values.length) {
-      const grown =
-        this.values instanceof Float64Array ? new Float64Array(this.length * 2) : new Float32Array(this.length * 2)
-      grown.set(this.values)
-      this.values = grown
-    }
-    this.values[this.length] = value
-    this.length += 1
-  }
+/** Columns that grow together by doubling; time keeps all its digits, channels are single precision. */
+export interface Body {
+  readonly columns: (Float32Array | Float64Array)[]
+  /** Columns of words: they hold nothing and are no fault. */
+  readonly words: readonly boolean[]
+  rows: number
+  room: number
 }
 
-const missing = /^(|-+|nan|n\/?a|null|none|inf(inity)?|\?)$/i
+export interface Marks {
+  /** Byte that parts the fields. */
+  readonly delimiter: number
+  readonly decimalComma: boolean
+  /** Whether a comma met on the slow path may be the decimal mark. */
+  readonly commaToo: boolean
+}
 
-/** A field that is no plain number: blank, text, quoted, unit behind it, clock time. NaN where it says nothing. */
-export function slowNumber(text: string, decimalComma: boolean): number {
-  let field = text.trim()
-  if (field.startsWith('"') && field.endsWith('"')) field = field.slice(1, -1).replaceAll('""', '"').trim()
-  if (decimalComma) field = field.replace(',', '.')
-  if (missing.test(field)) return Number.NaN
-  const plain = Number(field)
-  if (!Number.isNaN(plain)) return plain
-  const clock = /^(\d+):(\d{1,2})(?::(\d{1,2}(?:\.\d+)?))?$/.exec(field)
-  if (clock) {
-    const [first, second, third] = [Number(clock[1]), Number(clock[2]), clock[3]]
-    return third === undefined ? first * 60 + second : first * 3600 + second * 60 + Number(third)
-  }
-  const suffixed = /^([+-]?\d+(?:\.\d+)?)\s*[^\d\s][^\d]*$/.exec(field)
-  return suffixed ? Number(suffixed[1]) : Number.NaN
+const firstRoom = 4096
+
+export const emptyBody = (wide: readonly boolean[], words: readonly boolean[]): Body => ({
+  columns: wide.map((each) => (each ? new Float64Array(firstRoom) : new Float32Array(firstRoom))),
+  words,
+  rows: 0,
+  room: firstRoom,
+})
+
+function growInPlace(body: Body): void {
+  body.room *= 2
+  body.columns.forEach((column, i) => {
+    const grown = column instanceof Float64Array ? new Float64Array(body.room) : new Float32Array(body.room)
+    grown.set(column)
+    body.columns[i] = grown
+  })
 }
 
 /**
  * Scans the bytes of whole lines. A plain number of up to 15 digits is mantissa divided by a power of ten, both exact in
  * double precision, so the quotient is the correctly rounded value that `Number` gives. O(bytes).
- * @param bytes     Whole lines; the last may lack its line end.
- * @param columns   One for each column of the header; each grows by one value a line. Mutated.
+ * @param bytes     Whole lines; the last may lack its line end. A quoted field ends with its line at the latest.
+ * @param body      Each column grows by one value a line. Mutated.
  * @param firstLine 1-based number of the first line, for faults.
  * @returns how many lines there were, blank ones included.
  */
-export function scanLines(
-  bytes: Uint8Array,
-  columns: readonly Column[],
-  delimiter: number,
-  decimalComma: boolean,
-  firstLine: number,
-  faults: ScanFaults,
-): number {
-  const width = columns.length
-  const decimal = decimalComma ? COMMA : POINT
+export function scanLines(bytes: Uint8Array, body: Body, marks: Marks, firstLine: number, faults: ScanFaults): number {
+  const width = body.columns.length
+  const { delimiter } = marks
+  const decimal = marks.decimalComma ? COMMA : POINT
+  const { columns } = body
   const end = bytes.length
   let at = 0
   let line = firstLine
@@ -83,66 +77,89 @@ export function scanLines(
       line += 1
       continue
     }
+    if (body.rows === body.room) growInPlace(body)
+    const { rows } = body
     let field = 0
+    let start = at
     for (;;) {
-      const start = at
-      let negative = false
-      let mantissa = 0
-      let digits = 0
-      let decimals = -1
-      let plain = true
-      if (bytes[at] === MINUS) {
-        negative = true
+      start = at
+      let byte = bytes[at]!
+      while (byte === SPACE) {
         at += 1
-      } else if (bytes[at] === PLUS) at += 1
-      for (; at < end; at += 1) {
-        const byte = bytes[at]!
-        if (byte >= ZERO && byte <= NINE) {
-          mantissa = mantissa * 10 + (byte - ZERO)
-          digits += 1
-          if (decimals >= 0) decimals += 1
-        } else if (byte === delimiter || byte === LF || byte === CR) break
-        else if (byte === decimal && decimals < 0) decimals = 0
-        else if (byte === QUOTE && at === start) {
-          plain = false
-          at = endOfQuoted(bytes, at)
-          break
-        } else plain = false
+        byte = bytes[at]!
       }
-      if (field < width) {
-        if (plain && digits > 0 && digits <= 15) {
+      const negative = byte === MINUS
+      if (negative || byte === PLUS) {
+        at += 1
+        byte = bytes[at]!
+      }
+      let mantissa = 0
+      const digitsFrom = at
+      while (byte >= ZERO && byte <= NINE) {
+        mantissa = mantissa * 10 + (byte - ZERO)
+        at += 1
+        byte = bytes[at]!
+      }
+      let digits = at - digitsFrom
+      let decimals = 0
+      if (byte === decimal) {
+        at += 1
+        byte = bytes[at]!
+        const decimalsFrom = at
+        while (byte >= ZERO && byte <= NINE) {
+          mantissa = mantissa * 10 + (byte - ZERO)
+          at += 1
+          byte = bytes[at]!
+        }
+        decimals = at - decimalsFrom
+        digits += decimals
+      }
+      if (digits > 0 && digits <= 15 && (at >= end || byte === delimiter || byte === LF || byte === CR)) {
+        if (field < width) {
           const value = decimals > 0 ? mantissa / powersOfTen[decimals]! : mantissa
-          columns[field]!.push(negative ? -value : value)
-        } else columns[field]!.push(slowField(bytes, start, at, decimalComma, line, faults))
+          columns[field]![rows] = negative ? -value : value
+        }
+      } else {
+        at = endOfField(bytes, start, delimiter)
+        if (field < width) columns[field]![rows] = slowField(bytes, start, at, field, line, body, marks, faults)
       }
       field += 1
-      const byte = bytes[at]
-      if (at < end && byte === delimiter) {
+      if (at < end && bytes[at] === delimiter) {
         at += 1
         continue
       }
-      if (at < end) at += byte === CR && bytes[at + 1] === LF ? 2 : 1
       break
     }
-    if (field !== width) {
-      faults.ragged(line, field)
-      for (let i = field; i < width; i += 1) columns[i]!.push(Number.NaN)
+    // A mark after the last field, which many loggers write, opens no field.
+    const fields = field === width + 1 && start === at ? width : field
+    if (at < end) at += bytes[at] === CR && bytes[at + 1] === LF ? 2 : 1
+    if (fields !== width) {
+      faults.ragged(line, fields)
+      for (let i = fields; i < width; i += 1) columns[i]![rows] = Number.NaN
     }
+    body.rows += 1
     line += 1
   }
   return line - firstLine
 }
 
-/** Index just past the closing quote; a doubled quote inside is text. */
-function endOfQuoted(bytes: Uint8Array, open: number): number {
-  let at = open + 1
-  while (at < bytes.length) {
-    if (bytes[at] === QUOTE) {
-      if (bytes[at + 1] !== QUOTE) return at + 1
+/**
+ * Index of the mark or line end behind the field. A quote that opens the field hides marks until it is closed, a doubled
+ * one inside is text; one that is never closed hides nothing, so that it cannot swallow its neighbours.
+ */
+function endOfField(bytes: Uint8Array, start: number, delimiter: number): number {
+  let at = start
+  while (bytes[at] === SPACE) at += 1
+  if (bytes[at] === QUOTE) {
+    const open = at
+    for (at += 1; at < bytes.length && bytes[at] !== LF && bytes[at] !== CR; at += 1) {
+      if (bytes[at] !== QUOTE) continue
+      if (bytes[at + 1] !== QUOTE) break
       at += 1
     }
-    at += 1
+    if (bytes[at] !== QUOTE) at = open
   }
+  while (at < bytes.length && bytes[at] !== delimiter && bytes[at] !== LF && bytes[at] !== CR) at += 1
   return at
 }
 
@@ -150,15 +167,18 @@ function slowField(
   bytes: Uint8Array,
   start: number,
   end: number,
-  comma: boolean,
+  field: number,
   line: number,
+  body: Body,
+  marks: Marks,
   faults: ScanFaults,
 ): number {
-  if (end === start) return Number.NaN
+  if (end === start || body.words[field]) return Number.NaN
   let text = ''
   for (let i = start; i < end && i < start + 200; i += 1) text += String.fromCharCode(bytes[i]!)
-  const value = slowNumber(text, comma)
-  if (Number.isNaN(value) && !missing.test(text.trim())) faults.unreadable(line, text.trim().slice(0, 40))
+  const value = slowNumber(text, marks.decimalComma || marks.commaToo)
+  if (Number.isNaN(value) && !missing.test(text.replaceAll('"', '').trim()))
+    faults.unreadable(line, text.trim().slice(0, 40))
   return value
 }
 

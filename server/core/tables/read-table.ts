@@ -27,7 +27,9 @@ function readCell(text: string, comma: boolean): number {
     .trim()
     .replace(/\s*(%|kpa|rpm)$/i, '')
     .replace('\u2212', '-')
-  return trimmed === '' ? Number.NaN : Number(comma ? trimmed.replace(',', '.') : trimmed)
+  return /^[+-]?0[xob]/i.test(trimmed) || trimmed === ''
+    ? Number.NaN
+    : Number(comma ? trimmed.replace(',', '.') : trimmed)
 }
 
 /** Rows of the text that belong to the table: lines after "#" and blank lines are remarks. */
@@ -125,6 +127,9 @@ export function readTable(text: string, rules: TableRules): TableReading {
   const notes: string[] = []
   const afr = rules.kind === 'target' && medianOf(values.flat()) > 5
   if (afr) notes.push(`Read as air-fuel ratios and divided by ${rules.stoichAfr}.`)
+  const middle = medianOf(values.flat())
+  if (rules.kind === 've' && middle < 3)
+    notes.push(`The values are around ${middle.toPrecision(2)} %: if they are fractions, multiply them by 100 first.`)
   const checked = checkValues(values, body, lines, rules, afr)
   if (checked.length > 0) return { ok: false, problems: checked.slice(0, 20) }
 

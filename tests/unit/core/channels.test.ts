@@ -4,7 +4,7 @@ import { describe, expect, test } from 'vitest'
 import { conversion } from '../../../server/core/channels/convert.ts'
 import { channelHealth } from '../../../server/core/channels/health.ts'
 import { recogniseName } from '../../../server/core/channels/names.ts'
-import { evenTime, missingChannels, recogniseColumns } from '../../../server/core/channels/recognise.ts'
+import { evenTime, missingChannels, recogniseColumns, toChannels } from '../../../server/core/channels/recognise.ts'
 
 describe('names', () => {
   // Terms and abbreviations of SAE J1930 / ISO 15031-2 (from memory), and spellings of other languages.
@@ -18,7 +18,15 @@ describe('names', () => {
     ['Throttle_Position', 'tp'],
     ['BARO', 'baro'],
     ['Drehzahl', 'rpm'],
-    ['Régime', null],
+    ['Régime moteur', 'rpm'],
+    ['Kühlmitteltemperatur', 'ect'],
+    ['Kuehlmitteltemperatur', 'ect'],
+    ['Température d’air', 'iat'],
+    ['Presión admisión', 'map'],
+    ['Tension batterie', 'battery'],
+    ['TPS 1', 'tp'],
+    ['Lambda 2', null],
+    ['vehicle speed', null],
     ['Saugrohrdruck', 'map'],
     ['STFT', 'trim'],
     ['knock', null],
@@ -47,6 +55,17 @@ describe('units', () => {
     expect(conversion('lambda', 'AFR', 14.7)!(14.7)).toBe(1)
     expect(conversion('lambda', 'phi', 14.7)!(1.25)).toBe(0.8)
   })
+
+  // 101.325 kPa: US Standard Atmosphere 1976, sea level.
+  test.each(['psig', 'psi gauge', 'psi (g)', 'PSI rel'])('%s is measured from the air outside', (name) => {
+    expect(conversion('map', name, 14.7)!(0)).toBe(101.325)
+    expect(conversion('map', name, 14.7, 90)!(0)).toBe(90)
+  })
+  test.each(['kPa', 'kPa abs', 'kPa (abs)', 'kPaa'])('%s is absolute', (name) =>
+    expect(conversion('map', name, 14.7)!(100)).toBe(100),
+  )
+  test('100 % of the base amount is no correction', () =>
+    expect(conversion('warmup', '% (100 = none)', 14.7)!(112)).toBe(12))
 
   test('a unit nobody knows is null, not a guess', () => expect(conversion('map', 'furlong', 14.7)).toBeNull())
 })
@@ -77,6 +96,53 @@ describe('recognition', () => {
     const [column] = recogniseColumns(['Boost'], [''], [make(-0.8, 1.1)], 14.7)
     expect(column!.channel).toBeNull()
     expect(column!.reason).toMatch(/runs from -0\.8/)
+  })
+
+  const guess = (title: string, unit: string, low: number, high: number) => {
+    const [column] = recogniseColumns([title], [unit], [make(low, high)], 14.7)
+    return [column!.channel, column!.channel ? column!.unit : null]
+  }
+  test.each([
+    ['volts of an oxygen sensor', 'O2', 'V', 0.1, 0.9, null, null],
+    ['an oxygen sensor without a unit', 'O2 sensor 1', '', 0.1, 0.9, null, null],
+    ['volts of a pressure sensor', 'MAP', 'V', 0.5, 4.5, null, null],
+    ['degrees of a throttle', 'TPS', 'deg', 0, 80, null, null],
+    // SAE J1979 says "equivalence ratio" for lambda, textbooks for its inverse (from memory): nobody but the user knows.
+    ['an equivalence ratio', 'Equivalence ratio', '', 0.8, 1.2, null, null],
+    ['an air-fuel ratio that cannot be one', 'Lambda', 'AFR', 0.8, 1.1, null, null],
+    ['a lambda that cannot be one', 'Lambda', 'lambda', 11, 16, null, null],
+    ['a trim that is neither factor nor percentage', 'Trim', '', 1.2, 2.9, null, null],
+    ['boost in pounds', 'Boost', 'psi', -10, 12, 'map', 'psi gauge'],
+    ['boost that never falls below zero', 'Boost', 'psi', 0, 12, 'map', 'psi gauge'],
+    ['absolute boost pressure', 'Boost pressure', 'kPa abs', 30, 180, 'map', 'kPa abs'],
+    ['warm-up in percent of the base amount', 'Warm-up', '%', 100, 160, 'warmup', '% (100 = none)'],
+    ['a factor', 'Trim', '', 0.9, 1.1, 'trim', 'factor'],
+    ['a unit that says none', 'Lambda', '-', 0.8, 1.2, 'lambda', 'lambda'],
+  ] as const)('%s: %s in “%s” from %d to %d is %s in %s', (_, title, unit, low, high, channel, used) =>
+    expect(guess(title, unit, low, high)).toEqual([channel, used]),
+  )
+
+  test('intake air of 90 beside coolant of 190 is in Fahrenheit too', () => {
+    const mapping = recogniseColumns(['CLT', 'IAT'], ['', ''], [make(60, 190), make(70, 95)], 14.7)
+    expect(mapping.map(({ unit: name }) => name)).toEqual(['F', 'F'])
+  })
+
+  test('gauge pressure counts from the log’s own barometer', () => {
+    const columns = [make(-5, 5), make(90, 90)]
+    const mapping = recogniseColumns(['MAP', 'Baro'], ['psi', 'kPa'], columns, 14.7)
+    const map = toChannels(mapping, columns, 14.7).get('map')!
+    expect(map[0]).toBeCloseTo(90 - unit(5, 'psi').toNumber('kPa'), 4)
+  })
+
+  test('a column said to be a channel in a unit nobody knows is still missing', () => {
+    const said = { index: 0, header: 'x', channel: 'lambda', unit: 'V', confidence: 1, reason: '' } as const
+    expect(missingChannels([said])).toContain('lambda')
+    expect(missingChannels([{ ...said, unit: 'AFR' }])).not.toContain('lambda')
+  })
+
+  test('a time column without a readable time is no time', () => {
+    const [column] = recogniseColumns(['Time'], [''], [Float64Array.from([NaN, NaN])], 14.7)
+    expect(column!.channel).toBeNull()
   })
 
   test('time that restarts or stands goes on growing', () => {

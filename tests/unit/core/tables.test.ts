@@ -33,6 +33,9 @@ describe('readTable', () => {
     expect(read.notes[0]).toMatch(/turned round/)
   })
 
+  test('percentages that look like fractions are remarked upon', () =>
+    expect(values(',1000,2000\n40,1.0,1.05\n100,1.1,1.2').notes[0]).toMatch(/if they are fractions/))
+
   test('air-fuel ratios become lambda of the fuel', () => {
     expect([...values(',1000,2000\n40,14.7,14.7\n100,12.495,12.495', target).values]).toEqual([1, 1, 0.85, 0.85])
   })
@@ -45,6 +48,7 @@ describe('readTable', () => {
     ['a doubled breakpoint', ',1000,1000\n40,50,55\n100,80,85', /has 1000 twice/, 1, 3],
     ['no speed axis', ',10,20\n40,50,55\n100,80,85', /Cannot tell which axis is engine speed/, null, null],
     ['pressure in another unit', ',1000,2000\n4,50,55\n15,80,85', /Is it in another unit/, null, null],
+    ['a number in base sixteen', ',1000,2000\n40,50,0x20\n100,80,85', /“0x20” is not a number/, 2, 3],
     ['too little', '1,2', /at least two breakpoints/, null, null],
   ])('%s is named with its place', (_, text, words, row, col) => {
     const read = readTable(text, ve)
