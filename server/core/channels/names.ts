@@ -12,7 +12,7 @@ const fold = (title: string): string =>
 /** Names as `fold` leaves them, by channel. */
 const names: Readonly<Record<ChannelName, string>> = {
   time: `
-    time timestamp zeit temps tiempo elapsedtime seconds sec t times timems uhrzeit zeitstempel horodatage tiempos
+    time timestamp zeit temps tiempo elapsedtime seconds sec t times uhrzeit zeitstempel horodatage tiempos
     timesec logtime elapsed laufzeit
   `,
   rpm: `
@@ -21,14 +21,14 @@ const names: Readonly<Record<ChannelName, string>> = {
   `,
   map: `
     map manifoldpressure manifoldabsolutepressure intakemanifoldpressure intakepressure saugrohrdruck
-    pressionadmission presionadmision mapkpa boost boostpressure intakemanifoldabsolutepressure
+    pressionadmission presionadmision boost boostpressure intakemanifoldabsolutepressure
     intakemanifoldabspressure manifoldabspressure manifoldabsolute manifoldpress ladedruck pressioncollecteur
     pressiondadmission presioncolector presiondeadmision absolutepressure
   `,
   lambda: `
     lambda afr airfuelratio wideband o2 lambda1 afr1 measuredlambda measuredafr lambdameasured widebandlambda
     widebandafr equivalenceratio phi lambdasensor lambdavalue lambdaist o2sensor oxygensensor heatedoxygensensor
-    lambdasonde sondelambda widebando2 airfuel airfuelratiomeasured uego wbo2 rapportairessence
+    lambdasonde sondelambda widebando2 airfuel airfuelratiomeasured rapportairessence
     relacionairecombustible
   `,
   targetLambda: `
@@ -38,41 +38,41 @@ const names: Readonly<Record<ChannelName, string>> = {
   `,
   ect: `
     ect clt coolant coolanttemperature enginecoolanttemperature coolanttemp watertemp kuehlmitteltemperatur
-    temperatureeau eautemperature cltf cltc ectf ectc cts coolanttempc watertemperature enginetemp enginetemperature
+    temperatureeau eautemperature watertemperature enginetemp enginetemperature
     kuhlmitteltemperatur kuhlwassertemperatur kuehlwassertemperatur kuhlmitteltemp temperaturemoteur
     temperatureliquide temperaturadelrefrigerante temperaturarefrigerante temperaturamotor temperaturaagua
     motortemperatur wassertemperatur
   `,
   iat: `
     iat intakeairtemperature intakeairtemp airtemp airtemperature intaketemp chargetemperature ansauglufttemperatur
-    temperatureair mat iatc iatf inletairtemperature inletairtemp inlettemp manifoldairtemp manifoldairtemperature
+    temperatureair mat inletairtemperature inletairtemp inlettemp manifoldairtemp manifoldairtemperature
     aircharge airchargetemperature ansaugtemperatur lufttemperatur temperaturedair temperatureairadmission
     temperaturaaire temperaturaadmision temperaturadeaire
   `,
   tp: `
-    tp tps throttle throttleposition throttleangle drosselklappe papillon mariposa tppct throttlepos throttlepercent
+    tp tps throttle throttleposition throttleangle drosselklappe papillon mariposa throttlepos throttlepercent
     throttlepositionsensor absolutethrottleposition throttlevalve drosselklappenstellung drosselklappenwinkel
-    drosselklappenposition positionpapillon ouverturepapillon posicionmariposa tpspct
+    drosselklappenposition positionpapillon ouverturepapillon posicionmariposa
   `,
   trim: `
-    trim closedlooptrim shorttermfueltrim stft fueltrim lambdacorrection egocorrection closedloopcorrection
-    shortfueltrim shorttermtrim egocor egocorr lambdatrim o2correction o2trim gego lambdaregler correctionlambda
+    trim closedlooptrim shorttermfueltrim stft fueltrim lambdacorrection closedloopcorrection
+    shortfueltrim shorttermtrim lambdatrim o2correction o2trim lambdaregler correctionlambda
     correccionlambda
   `,
   warmup: `
-    warmup warmupenrichment warmupcorrection warmlauf warmupenrich wue warmupfuel coldenrichment
+    warmup warmupenrichment warmupcorrection warmlauf warmupfuel coldenrichment
     warmlaufanreicherung enrichissementchauffe calentamiento
   `,
   afterStart: `
-    afterstart afterstartenrichment ase afterstartenrich afterstartcorrection poststart nachstart
+    afterstart afterstartenrichment afterstartcorrection poststart nachstart
     nachstartanreicherung apresdemarrage postarranque
   `,
   accel: `
-    acceleration accelerationenrichment accelenrichment transientfuel accelcorrection accelenrich
+    acceleration accelerationenrichment accelenrichment transientfuel accelcorrection
     acceleratorenrichment beschleunigungsanreicherung enrichissementacceleration transientcorrection
   `,
   pulseWidth: `
-    pulsewidth injectorpulsewidth pw injectiontime einspritzzeit tempsinjection ipw pw1 injectorpw injpw
+    pulsewidth injectorpulsewidth pw injectiontime einspritzzeit tempsinjection injectorpw
     injectorpulse injectorontime fuelpulsewidth injectionduration einspritzdauer tempsdinjection dureeinjection
     tiempoinyeccion tiempodeinyeccion pulsewidth1 injectortime
   `,
