@@ -4,6 +4,8 @@ import type { Grid } from '../../shared/grid.ts'
 /** One drive; all columns have the same length n, in these units; a missing reading is NaN. */
 export interface Drive {
   readonly id: string
+  /** Place in the vehicle's history: the table flashed in the earliest drive is what corrections are measured from. */
+  readonly number?: number
   /** s, ascending. */
   readonly timeS: Float64Array
   /** 1/min. */
@@ -37,4 +39,6 @@ export interface EngineFacts {
   readonly lambdaRange: { readonly low: number; readonly high: number }
   readonly revLimitRpm: number
   readonly stoichAfr: number
+  /** One injection a cylinder and cycle; absent where the sheet does not know. */
+  readonly injector?: { readonly mgPerMs: number; readonly deadTimeMs: number }
 }

@@ -1,23 +1,30 @@
 /** The one door of the learner: logs, engine and the present table in; a proposal with its uncertainty out. */
 import { cellCount, valueAt, type Grid } from '../../shared/grid.ts'
+import { diagnose, type Diagnosis } from './diagnose.ts'
 import type { Drive, EngineFacts } from './drive.ts'
 import { handAverage } from './evidence/hand.ts'
-import { airFlowKgS, evidenceSeconds, observe, totalDelayS, usualDelay, type Observations } from './evidence/samples.ts'
-import { estimate, type Estimate } from './fit/estimate.ts'
+import type { MaskTotals } from './evidence/masks.ts'
+import type { LearnRefusal } from './evidence/refuse.ts'
+import { inverseDiagonal } from './fit/cholesky.ts'
+import { contradictions, type Contradiction } from './fit/contradict.ts'
 import { guard, type HeldCell } from './fit/guard.ts'
-import { smoothPrior } from './fit/prior.ts'
-import { refusalOf, type LearnRefusal } from './evidence/refuse.ts'
+import { usualLevelSd } from './fit/log-fit.ts'
+import { priorParts, type PriorParts, type PriorScale } from './fit/prior.ts'
+import { choosePrior, gather, type Solution } from './fit/system.ts'
+import { relinearise, rememberLog, type LogMemory } from './log-memory.ts'
+import { airFlowKgS } from './model/airflow.ts'
+import { totalDelayS, type MixturePath } from './model/path.ts'
 
 /** Grows with every change that can change a number. Frozen with each proposal. */
-export const coreVersion = 'core-1'
+export const coreVersion = 'core-2'
 
 export interface LearnSettings {
   /** Largest step of a cell in one revision, %. */
   readonly stepCapPct: number
 }
 
-export interface LearnInput {
-  readonly drives: readonly Drive[]
+/** What a proposal is made on, beside the logs. */
+export interface Ground {
   readonly engine: EngineFacts
   /** The table to propose on. */
   readonly grid: Grid
@@ -26,8 +33,25 @@ export interface LearnInput {
   readonly settings: LearnSettings
 }
 
+export interface LearnInput extends Ground {
+  readonly drives: readonly Drive[]
+}
+
 /** Called as work goes on: what is done, how many of how many. */
 export type LearnProgress = (step: string, done: number, total: number) => void
+
+/** What one log brings to a proposal. */
+export interface LogShare extends MaskTotals {
+  readonly driveId: string
+  readonly path: MixturePath
+  /** Robust standard deviation of what the fit could not explain, %. */
+  readonly noisePct: number
+  readonly driftPct: number
+  /** How far the solution is from where the log was linearised, at most, % of VE in a cell the log has evidence in. */
+  readonly farPct: number
+  /** Chi-square per cell of this log against all others; above 2 it speaks of another engine. NaN for a lone log. */
+  readonly disagreement: number
+}
 
 export interface Learned {
   readonly grid: Grid
@@ -41,12 +65,21 @@ export interface Learned {
   /** One standard deviation, % of the value. */
   readonly sigmaPct: Float64Array
   readonly misfitPct: Float64Array
+  readonly visits: Int32Array
   readonly handNearest: Float64Array
   readonly handBilinear: Float64Array
   readonly held: readonly HeldCell[]
-  readonly leftOut: readonly { driveId: string; totalS: number; usedS: number; leftOutS: Record<string, number> }[]
+  /** Faults that look like a wrong table; empty where none stands out. */
+  readonly diagnoses: readonly Diagnosis[]
+  /** VE by the fuel actually delivered (pulse width and injector data), %; NaN where no pulse width is logged. */
+  readonly byPulse: Float64Array
+  readonly logs: readonly LogShare[]
+  /** Delay, lag and film of the logs together. */
+  readonly path: MixturePath
   /** Total delay from injection to reading at idle, cruise and full load, s. */
   readonly delay: { readonly idleS: number; readonly cruiseS: number; readonly fullS: number }
+  readonly priorScale: PriorScale
+  readonly levelSdPct: number
   readonly coreVersion: string
 }
 
@@ -54,47 +87,117 @@ export type LearnResult = { readonly ok: true; readonly proposal: Learned } | Le
 
 /** Less than this many useful seconds is no evidence. */
 const leastEvidenceS = 0.3
+/** A solution further than this from a log's linearisation is not that log's any more, %. */
+const farLimitPct = 5
 
-/** Learns the VE surface. Deterministic: the same input gives the same bits. */
+/** Learns the VE surface. Deterministic: the same input gives the same bits, in whatever order the logs come. */
 export function learn(input: LearnInput, progress: LearnProgress = () => undefined): LearnResult {
-  const { drives, engine, grid, current } = input
-  const observations: Observations[] = []
-  for (const drive of drives) {
-    const seen = observe(drive, engine, grid, usualDelay)
-    const refusal = refusalOf(drive, seen)
-    if (refusal) return refusal
-    observations.push(seen)
-    progress('Looking at what each log can teach', observations.length, drives.length)
+  const { drives, engine, grid } = input
+  const parts = priorParts(grid)
+  const memories: LogMemory[] = []
+  for (const [i, drive] of drives.entries()) {
+    const remembered = rememberLog(drive, engine, grid, parts, (done, total) =>
+      progress('Learning each log', i * total + done, drives.length * total),
+    )
+    if (!remembered.ok) return remembered
+    memories.push(remembered.memory)
   }
-  const base = current.map(Math.log)
-  const prior = smoothPrior(grid, base, { curvature: 1.25, gradient: 1 })
-  const fit = estimate(observations, prior, base, (done, total) => progress('Fitting the surface', done, total))
-  if (!fit)
-    return {
-      ok: false,
-      reason: 'not-solvable',
-      detail: 'The table could not be fitted: the equations have no single answer.',
-    }
-  return { ok: true, proposal: propose(input, observations, fit) }
+  let result = learnFrom(memories, input, parts)
+  for (let round = 0; round < settleRounds && result.ok; round += 1) {
+    const far = farLogs(result.proposal)
+    if (far.length === 0) break
+    const x = result.proposal.fitted.map(Math.log)
+    for (const [i, drive] of drives.entries())
+      if (far.includes(drive.id)) memories[i] = relinearise(memories[i]!, drive, engine, grid, x)
+    result = learnFrom(memories, input, parts)
+  }
+  return result
 }
 
-function propose(input: LearnInput, observations: readonly Observations[], fit: Estimate): Learned {
-  const { grid, current, drives, engine } = input
+/** How often logs are taken again where the sum of all ended far from them; in practice once is enough. */
+export const settleRounds = 2
+
+/** Logs that must be linearised again at the solution, by drive id. */
+export const farLogs = (proposal: Learned): string[] =>
+  proposal.logs.filter((log) => log.farPct > farLimitPct).map((log) => log.driveId)
+
+const notSolvable: LearnRefusal = {
+  ok: false,
+  reason: 'not-solvable',
+  detail: 'The table could not be fitted: the equations have no single answer.',
+}
+
+/** A proposal from what is remembered of the logs: a sum and a few factorisations, no samples. O(cells³). */
+export function learnFrom(unordered: readonly LogMemory[], ground: Ground, parts: PriorParts): LearnResult {
+  // One order for all callers: floating-point sums depend on it.
+  const logs = unordered.toSorted((a, b) => a.number - b.number || (a.driveId < b.driveId ? -1 : 1))
+  const base = logs[0]?.base
+  if (!base) return notSolvable
+  const found = solveTogether(logs, base, parts)
+  if (!found) return notSolvable
+  return { ok: true, proposal: propose(logs, ground, found) }
+}
+
+interface Together {
+  readonly solution: Solution
+  readonly scale: PriorScale
+  readonly levelSd: number
+  readonly disagreement: readonly Contradiction[]
+}
+
+const levelSds = [0.003, 0.005, 0.008, 0.013, 0.02, 0.03]
+
+/** Prior by evidence; from three logs on also how much drives differ in level. */
+function solveTogether(logs: readonly LogMemory[], base: Float64Array, parts: PriorParts): Together | null {
+  const candidates = logs.length < 3 ? [usualLevelSd] : levelSds
+  let best: { found: NonNullable<ReturnType<typeof choosePrior>>; levelSd: number; score: number } | null = null
+  for (const levelSd of candidates) {
+    const found = choosePrior(parts, base, gather(logs, base, levelSd))
+    if (!found) return null
+    const score = found.solution.lnEvidence - (Math.log(levelSd / usualLevelSd) / 0.8) ** 2 / 2
+    if (!best || score > best.score) best = { found, levelSd, score }
+  }
+  if (!best) return null
+  const { found, levelSd } = best
+  return { ...found, levelSd, disagreement: contradictions(logs, base, parts, found.scale, levelSd) }
+}
+
+/** Largest distance of x from where a log was linearised, over the cells it has evidence in, %. */
+function farthest(memory: LogMemory, x: Float64Array): number {
+  let far = 0
+  for (let cell = 0; cell < x.length; cell += 1)
+    if (memory.evidenceS[cell]! >= leastEvidenceS) far = Math.max(far, 100 * Math.abs(x[cell]! - memory.at[cell]!))
+  return far
+}
+
+/** The grid cannot follow the surface better than this, ln. */
+const surfaceFloor = 0.004
+
+function propose(logs: readonly LogMemory[], ground: Ground, together: Together): Learned {
+  const { grid, current, engine } = ground
   const n = cellCount(grid)
-  const evidenceS = evidenceSeconds(observations, n)
+  const { x, factor } = together.solution
+  const total = (of: (log: LogMemory) => ArrayLike<number>) =>
+    Float64Array.from({ length: n }, (_, cell) => logs.reduce((sum, log) => sum + of(log)[cell]!, 0))
+  const evidenceS = total((log) => log.evidenceS)
   const hasEvidence = Uint8Array.from(evidenceS, (seconds) => (seconds >= leastEvidenceS ? 1 : 0))
-  const fitted = fit.x.map(Math.exp)
+  const misfit = total((log) => log.misfitSum)
+  const fitted = x.map(Math.exp)
+  const sigma = inverseDiagonal(factor, n).map((variance) => Math.sqrt(variance + surfaceFloor ** 2))
   const { proposed, held } = guard({
     grid,
     current,
     fitted,
-    sigma: fit.sigma,
+    sigma,
     evidenceS,
     hasEvidence,
-    stepCapPct: input.settings.stepCapPct,
+    stepCapPct: ground.settings.stepCapPct,
   })
+  const path = meanPath(logs)
+  const mean = (of: (log: LogMemory) => Float64Array) => meanByEvidence(logs, of, n)
+  const routeGap = mean((log) => log.routeGap)
   const delayAt = (rpm: number, mapKpa: number) =>
-    totalDelayS(usualDelay, airFlowKgS(valueAt(grid, fitted, rpm, mapKpa), mapKpa, engine.displacementL, rpm, 30))
+    totalDelayS(path, airFlowKgS(valueAt(grid, fitted, rpm, mapKpa), mapKpa, engine.displacementL, rpm, 30))
   return {
     grid,
     current,
@@ -102,17 +205,76 @@ function propose(input: LearnInput, observations: readonly Observations[], fit: 
     proposed,
     evidenceS: evidenceS.map((seconds, cell) => (hasEvidence[cell] ? seconds : 0)),
     hasEvidence,
-    sigmaPct: fit.sigma.map((sigma) => 100 * sigma),
-    misfitPct: fit.misfit.map((value, cell) => (hasEvidence[cell] ? 100 * value : Number.NaN)),
-    handNearest: handAverage(observations, n, true),
-    handBilinear: handAverage(observations, n, false),
+    sigmaPct: sigma.map((value) => 100 * value),
+    misfitPct: misfit.map((sum, cell) => (hasEvidence[cell] ? (100 * sum) / evidenceS[cell]! : Number.NaN)),
+    visits: Int32Array.from(total((log) => log.visits)),
+    handNearest: handAverage(
+      logs.map((log) => log.handNearest),
+      n,
+    ),
+    handBilinear: handAverage(
+      logs.map((log) => log.handBilinear),
+      n,
+    ),
     held,
-    leftOut: observations.map((each, i) => ({ driveId: drives[i]!.id, ...each.masks })),
+    diagnoses: diagnose({
+      grid,
+      correction: mean((log) => log.base).map((base, cell) => x[cell]! - base),
+      sigma,
+      evidenceS,
+      inverseFlow: mean((log) => log.inverseFlow),
+      inverseFilling: mean((log) => log.inverseFilling),
+      routeGap,
+    }),
+    byPulse: fitted.map((ve, cell) => (hasEvidence[cell] ? ve * Math.exp(routeGap[cell]!) : Number.NaN)),
+    logs: logs.map((log, i) => ({
+      driveId: log.driveId,
+      ...log.masks,
+      path: log.nature.path,
+      noisePct: 100 * log.nature.noise,
+      driftPct: 100 * log.nature.driftSd,
+      farPct: farthest(log, x),
+      disagreement: together.disagreement[i]?.perCell ?? Number.NaN,
+    })),
+    path,
     delay: {
       idleS: delayAt(800, 35),
       cruiseS: delayAt(2500, 55),
       fullS: delayAt(0.8 * engine.revLimitRpm, Math.min(grid.mapKpa.at(-1)!, 100)),
     },
+    priorScale: together.scale,
+    levelSdPct: 100 * together.levelSd,
     coreVersion,
+  }
+}
+
+/** Mean over the logs, each weighed by its evidence in the cell; logs without a value there have no say. */
+function meanByEvidence(logs: readonly LogMemory[], of: (log: LogMemory) => Float64Array, n: number): Float64Array {
+  const out = new Float64Array(n)
+  for (let cell = 0; cell < n; cell += 1) {
+    let sum = 0
+    let weight = 0
+    for (const log of logs) {
+      const value = of(log)[cell]!
+      if (!Number.isFinite(value) || log.evidenceS[cell]! === 0) continue
+      sum += log.evidenceS[cell]! * value
+      weight += log.evidenceS[cell]!
+    }
+    out[cell] = sum / weight
+  }
+  return out
+}
+
+/** The logs' paths, each weighed by its useful seconds. */
+function meanPath(logs: readonly LogMemory[]): MixturePath {
+  const total = logs.reduce((sum, log) => sum + log.masks.usedS, 0)
+  const mean = (of: (path: MixturePath) => number) =>
+    logs.reduce((sum, log) => sum + (log.masks.usedS / total) * of(log.nature.path), 0)
+  return {
+    t0S: mean((path) => path.t0S),
+    massKg: mean((path) => path.massKg),
+    lagS: mean((path) => path.lagS),
+    filmShare: mean((path) => path.filmShare),
+    filmTauS: mean((path) => path.filmTauS),
   }
 }

@@ -3,4 +3,13 @@ import { register } from 'tsx/esm/api'
 
 register()
 const work = await import('./thread.ts')
-export const { hashPassword, checkPassword, readLogFile, learnTable } = work
+export const {
+  hashPassword,
+  checkPassword,
+  readLogFile,
+  rememberDrive,
+  relineariseDrive,
+  addUpLogs,
+  replayDrive,
+  samplesOfCell,
+} = work

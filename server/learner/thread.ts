@@ -4,7 +4,16 @@ import { createGunzip } from 'node:zlib'
 import type { MessagePort } from 'node:worker_threads'
 import { compare, hash } from 'bcryptjs'
 import { createLogReader, type LogReading } from '../core/csv/read-log.ts'
-import { learn, type LearnInput, type LearnResult } from '../core/learn.ts'
+import { serialize, deserialize } from 'node:v8'
+import type { Grid } from '../../shared/grid.ts'
+import { cellSamples, type CellSample } from '../core/cell-samples.ts'
+import type { Drive, EngineFacts } from '../core/drive.ts'
+import type { LearnRefusal } from '../core/evidence/refuse.ts'
+import { priorParts } from '../core/fit/prior.ts'
+import { learnFrom, type Ground, type LearnResult } from '../core/learn.ts'
+import { relinearise, rememberLog, type LogMemory } from '../core/log-memory.ts'
+import type { MixturePath } from '../core/model/path.ts'
+import { replay, type Replay, type ReplayInput } from '../core/replay.ts'
 
 /** 2^12 rounds: under a second on an ordinary machine, as OWASP's password storage page asks. */
 const bcryptCost = 12
@@ -26,8 +35,43 @@ export async function readLogFile({ path, gzip }: { path: string; gzip: boolean 
   return reader.end()
 }
 
-export function learnTable({ input, progress }: { input: LearnInput; progress: MessagePort }): LearnResult {
-  const result = learn(input, (step, done, total) => progress.postMessage({ step, done, total }))
-  progress.close()
-  return result
+/** What is remembered of a log travels and rests as bytes: only the threads look inside. */
+const pack = (memory: LogMemory): Uint8Array => serialize(memory)
+const unpack = (bytes: Uint8Array): LogMemory => deserialize(bytes) as LogMemory
+
+export interface LogGround {
+  readonly drive: Drive
+  readonly engine: EngineFacts
+  readonly grid: Grid
 }
+export type PackedMemory = { readonly ok: true; readonly memory: Uint8Array } | LearnRefusal
+
+export function rememberDrive(input: LogGround & { progress: MessagePort }): PackedMemory {
+  const { drive, engine, grid, progress } = input
+  try {
+    const found = rememberLog(drive, engine, grid, priorParts(grid), (done, total) =>
+      progress.postMessage({ done, total }),
+    )
+    return found.ok ? { ok: true, memory: pack(found.memory) } : found
+  } finally {
+    progress.close()
+  }
+}
+
+export const relineariseDrive = ({
+  memory,
+  drive,
+  engine,
+  grid,
+  x,
+}: LogGround & { memory: Uint8Array; x: Float64Array }): Uint8Array =>
+  pack(relinearise(unpack(memory), drive, engine, grid, x))
+
+export const addUpLogs = ({ memories, ground }: { memories: readonly Uint8Array[]; ground: Ground }): LearnResult =>
+  learnFrom(memories.map(unpack), ground, priorParts(ground.grid))
+
+export const replayDrive = (input: ReplayInput): Replay => replay(input)
+
+export const samplesOfCell = (
+  input: LogGround & { fitted: Float64Array; path: MixturePath; cell: number; most: number },
+): CellSample[] => cellSamples(input.drive, input.engine, input.grid, input.fitted, input.path, input.cell, input.most)

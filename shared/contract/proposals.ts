@@ -9,14 +9,34 @@ import { VehicleRef } from './vehicles.ts'
 export const Held = z.object({ cell: z.number().int(), reason: z.string(), releaseS: z.number().nullable() })
 export type Held = z.infer<typeof Held>
 
-export const LeftOut = z.object({
+/** Delay, lag and film between injector and reading. */
+export const MixturePath = z.object({
+  t0S: z.number(),
+  massKg: z.number(),
+  lagS: z.number(),
+  filmShare: z.number(),
+  filmTauS: z.number(),
+})
+
+/** What one log brings to the proposal. */
+export const LogShare = z.object({
   logId: Id,
   totalS: z.number(),
   usedS: z.number(),
   /** Seconds left out by reason, such as "fuel cut" or "cold". */
   leftOutS: z.record(z.string(), z.number()),
+  path: MixturePath,
+  /** What the fit could not explain, one standard deviation, %. */
+  noisePct: z.number(),
+  driftPct: z.number(),
+  /** Chi-square per cell against the other logs; above 2 it speaks of another engine. Null for a lone log. */
+  disagreement: z.number().nullable(),
 })
-export type LeftOut = z.infer<typeof LeftOut>
+export type LogShare = z.infer<typeof LogShare>
+
+/** A fault that looks like a wrong table. */
+export const Diagnosis = z.object({ kind: z.string(), detail: z.string(), lookAt: z.string() })
+export type Diagnosis = z.infer<typeof Diagnosis>
 
 export const ProposalLine = z.object({
   id: Id,
@@ -30,7 +50,8 @@ export const ProposalLine = z.object({
   requestedBy: z.string(),
   requestedAt: Instant,
   base: z.object({ id: Id, number: z.number().int() }),
-  logs: z.array(z.object({ id: Id, number: z.number().int(), title: z.string() })),
+  /** `used` is false for a log that was switched off. */
+  logs: z.array(z.object({ id: Id, number: z.number().int(), title: z.string(), used: z.boolean() })),
   counts: z
     .object({ known: z.number(), total: z.number(), open: z.number(), held: z.number(), changed: z.number() })
     .nullable(),
@@ -59,8 +80,15 @@ export const Proposal = ProposalLine.extend({
       handNearest: Numbers,
       handBilinear: Numbers,
       held: z.array(Held),
-      leftOut: z.array(LeftOut),
-      delay: z.object({ idleS: z.number(), cruiseS: z.number(), fullS: z.number() }).nullable(),
+      /** Separate visits of each cell. */
+      visits: Numbers,
+      /** VE by the fuel actually delivered, where pulse width is logged. */
+      byPulse: Numbers,
+      diagnoses: z.array(Diagnosis),
+      /** Those in use only. */
+      logs: z.array(LogShare),
+      path: MixturePath,
+      delay: z.object({ idleS: z.number(), cruiseS: z.number(), fullS: z.number() }),
     })
     .nullable(),
   /** One per cell; `byHand` holds the value where the decision is by hand or pinned by hand. */
@@ -140,4 +168,64 @@ export const makeRevision = endpoint({
   params: ProposalRef,
   body: z.strictObject({ version: z.number().int(), note: z.string().max(500).default('') }),
   response: Revision,
+})
+export const chooseLogs = endpoint({
+  method: 'POST',
+  path: '/api/proposals/:proposalId/logs',
+  access: 'proposal:edit',
+  summary: 'Switch logs of the proposal on or off; the surface answers at once, decisions stay',
+  params: ProposalRef,
+  body: z.strictObject({ version: z.number().int(), logIds: z.array(Id).min(1).max(100) }),
+  response: Proposal,
+})
+
+export const CellSample = z.object({
+  logId: Id,
+  timeS: z.number(),
+  rpm: z.number(),
+  mapKpa: z.number(),
+  lambda: z.number(),
+  /** VE that would explain the reading by itself, %. */
+  ve: z.number(),
+  /** Share of the reading that is this cell's, 0 to 1. */
+  share: z.number(),
+})
+export const getCellSamples = endpoint({
+  method: 'GET',
+  path: '/api/proposals/:proposalId/cells/:cell/samples',
+  access: 'proposal:read',
+  summary: 'Readings that speak for a cell, thinned evenly',
+  params: z.strictObject({ proposalId: Id, cell: z.coerce.number().int().min(0).max(4095) }),
+  response: z.object({ samples: z.array(CellSample) }),
+})
+
+export const Replay = z.object({
+  timeS: z.array(z.number()),
+  measured: Numbers,
+  target: Numbers,
+  /** The model's account of the drive as it was. */
+  explained: Numbers,
+  /** Lambda with the table tried, closed loop off. */
+  predicted: Numbers,
+  /** One standard deviation of `predicted`, %. */
+  bandPct: Numbers,
+  /** Over the whole drive: share of the seconds within 3 % of target. */
+  onTarget: z.object({ measured: z.number(), predicted: z.number(), seconds: z.number() }),
+})
+export type Replay = z.infer<typeof Replay>
+
+export const replayDrive = endpoint({
+  method: 'GET',
+  path: '/api/proposals/:proposalId/replay',
+  access: 'proposal:read',
+  summary: 'What a drive would have read with the table as decided so far, the current one or the proposed one',
+  params: ProposalRef,
+  query: z.strictObject({
+    logId: Id,
+    table: z.enum(['decided', 'current', 'proposed']).default('decided'),
+    fromS: z.coerce.number().min(0).default(0),
+    toS: z.coerce.number().min(0).default(1e6),
+    points: z.coerce.number().int().min(50).max(2000).default(600),
+  }),
+  response: Replay,
 })

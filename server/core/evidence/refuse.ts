@@ -1,6 +1,6 @@
 /** When a log cannot teach at all: the reason, in words a person can act on. */
 import type { Drive } from '../drive.ts'
-import type { Observations } from './samples.ts'
+import type { MaskTotals } from './masks.ts'
 
 export interface LearnRefusal {
   readonly ok: false
@@ -22,7 +22,7 @@ function span(values: Float64Array): { low: number; high: number } {
 const leastUsedS = 20
 
 /** Null where the log can be learned from. */
-export function refusalOf(drive: Drive, seen: Observations): LearnRefusal | null {
+export function refusalOf(drive: Drive, totals: MaskTotals): LearnRefusal | null {
   const refuse = (reason: LearnRefusal['reason'], detail: string): LearnRefusal => ({
     ok: false,
     reason,
@@ -44,8 +44,8 @@ export function refusalOf(drive: Drive, seen: Observations): LearnRefusal | null
       : null
   const dead = flat(rpm, 'Engine speed') ?? flat(map, 'Manifold pressure') ?? flat(lambda, 'Lambda')
   if (dead) return dead
-  const { usedS, totalS, leftOutS } = seen.masks
-  if (usedS >= leastUsedS && seen.count > 0) return null
+  const { usedS, totalS, leftOutS } = totals
+  if (usedS >= leastUsedS) return null
   const worst = Object.entries(leftOutS).sort((a, b) => b[1] - a[1])[0]
   if (worst?.[0] === 'outside the table') {
     return refuse(
@@ -53,7 +53,11 @@ export function refusalOf(drive: Drive, seen: Observations): LearnRefusal | null
       'The engine ran outside the axes of the table nearly all the time: check the unit of manifold pressure, or widen the axes.',
     )
   }
-  if (worst?.[0] === 'sensor at a limit') {
+  if (
+    worst?.[0] === 'sensor at a limit' ||
+    worst?.[0] === 'richer than the sensor reads' ||
+    worst?.[0] === 'sensor frozen'
+  ) {
     return refuse(
       'pegged',
       'Lambda stands at the end of the sensor’s range nearly all the time: it cannot say how far off the table is.',

@@ -9,10 +9,19 @@ export interface PriorScale {
 }
 
 export interface Prior {
-  /** Precision, n × n, row-major, full. */
+  /** Precision Q, n × n, row-major, full. */
   readonly precision: Float64Array
-  /** precision · mean, n long. */
+  /** Q · mean, n. */
   readonly pull: Float64Array
+}
+
+/** The parts a prior is made of at scale 1, each n × n, full: they depend on the axes alone. */
+export interface PriorParts {
+  readonly n: number
+  readonly curvature: Float64Array
+  readonly gradient: Float64Array
+  /** Precision of the level of each cell. */
+  readonly level: number
 }
 
 type Terms = readonly (readonly [cell: number, factor: number])[]
@@ -45,12 +54,8 @@ function secondDifference(
   }
 }
 
-/**
- * Prior of x = ln VE: second differences of x itself along both axes, first differences of x − base, and a weak level.
- * Reference spacings 420 rpm and 9 kPa; the estimator's page gives the figures.
- * @param base  ln of the flashed table on the same grid, n long.
- */
-export function smoothPrior(grid: Grid, base: Float64Array, scale: PriorScale): Prior {
+/** Second differences of ln VE along both axes. Reference spacings 420 rpm and 9 kPa; n × n. */
+function curvaturePart(grid: Grid): Float64Array {
   const n = cellCount(grid)
   const { rpm, mapKpa } = grid
   const q = new Float64Array(n * n)
@@ -58,7 +63,7 @@ export function smoothPrior(grid: Grid, base: Float64Array, scale: PriorScale): 
     for (let col = 1; col + 1 < rpm.length; col += 1) {
       const at = cellIndex(grid, row, col)
       const { terms, h } = secondDifference(rpm[col - 1]!, rpm[col]!, rpm[col + 1]!, [at - 1, at, at + 1])
-      addTerm(q, n, terms, 0.04 * scale.curvature * clip(h / 420, 0.5, 4) ** 1.3)
+      addTerm(q, n, terms, 0.04 * clip(h / 420, 0.5, 4) ** 1.3)
     }
   }
   for (let row = 1; row + 1 < mapKpa.length; row += 1) {
@@ -71,43 +76,58 @@ export function smoothPrior(grid: Grid, base: Float64Array, scale: PriorScale): 
         at,
         at + rpm.length,
       ])
-      addTerm(q, n, terms, sd * scale.curvature * clip(h / 9, 0.5, 4) ** 1.3)
+      addTerm(q, n, terms, sd * clip(h / 9, 0.5, 4) ** 1.3)
     }
   }
-  const correction = new Float64Array(n * n)
-  const step = 0.04 * scale.gradient
+  return q
+}
+
+/** First differences of the correction along both axes, n × n. */
+function gradientPart(grid: Grid): Float64Array {
+  const n = cellCount(grid)
+  const { rpm, mapKpa } = grid
+  const q = new Float64Array(n * n)
+  const step = (from: number, to: number): Terms => [
+    [from, -1],
+    [to, 1],
+  ]
   for (let row = 0; row < mapKpa.length; row += 1) {
     for (let col = 0; col < rpm.length; col += 1) {
       const at = cellIndex(grid, row, col)
-      if (col + 1 < rpm.length)
-        addTerm(
-          correction,
-          n,
-          [
-            [at, -1],
-            [at + 1, 1],
-          ],
-          step,
-        )
-      if (row + 1 < mapKpa.length)
-        addTerm(
-          correction,
-          n,
-          [
-            [at, -1],
-            [at + rpm.length, 1],
-          ],
-          step,
-        )
-      addTerm(correction, n, [[at, 1]], 0.25 * Math.sqrt(20))
+      if (col + 1 < rpm.length) addTerm(q, n, step(at, at + 1), 0.04)
+      if (row + 1 < mapKpa.length) addTerm(q, n, step(at, at + rpm.length), 0.04)
     }
   }
+  return q
+}
+
+export const priorParts = (grid: Grid): PriorParts => ({
+  n: cellCount(grid),
+  curvature: curvaturePart(grid),
+  gradient: gradientPart(grid),
+  level: 1 / (20 * 0.25 ** 2),
+})
+
+/**
+ * Prior of x = ln VE: second differences of x itself, first differences of x − base, and a weak level of x − base.
+ * Smoothing the correction alone would be wrong: the flashed table's steps are hand-made, the engine's are not.
+ * @param base  ln of the flashed table on the same grid, n.
+ */
+export function priorOf(parts: PriorParts, base: Float64Array, scale: PriorScale): Prior {
+  const { n } = parts
+  const precision = new Float64Array(n * n)
   const pull = new Float64Array(n)
+  const c = 1 / scale.curvature ** 2
+  const d = 1 / scale.gradient ** 2
   for (let i = 0; i < n; i += 1) {
-    let sum = 0
-    for (let j = 0; j < n; j += 1) sum += correction[i * n + j]! * base[j]!
+    let sum = parts.level * base[i]!
+    for (let j = 0; j < n; j += 1) {
+      const gradient = d * parts.gradient[i * n + j]!
+      precision[i * n + j] = c * parts.curvature[i * n + j]! + gradient
+      sum += gradient * base[j]!
+    }
+    precision[i * n + i]! += parts.level
     pull[i] = sum
   }
-  for (let i = 0; i < q.length; i += 1) q[i]! += correction[i]!
-  return { precision: q, pull }
+  return { precision, pull }
 }

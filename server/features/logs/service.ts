@@ -6,7 +6,7 @@ import { createGunzip, createGzip } from 'node:zlib'
 import { and, eq, sql } from 'drizzle-orm'
 import type { ChannelName, Log, LogLine, Trace } from '../../../shared/contract/logs.ts'
 import { channelNames, ChannelName as ChannelSchema } from '../../../shared/contract/logs.ts'
-import type { EngineSheet } from '../../../shared/contract/vehicles.ts'
+import type { EngineSheetInput } from '../../../shared/contract/vehicles.ts'
 import type { Drive, EngineFacts } from '../../core/drive.ts'
 import { missingChannels } from '../../core/channels/recognise.ts'
 import { storedUnit } from '../../core/channels/convert.ts'
@@ -345,14 +345,26 @@ export async function logsInScope(
   return chosen.sort((a, b) => a.number - b.number)
 }
 
-export const factsOf = (sheet: EngineSheet): EngineFacts => ({
+/** The engine's facts as the learner takes them; the injector's flow becomes mass of this fuel. */
+export const factsOf = (sheet: EngineSheetInput): EngineFacts => ({
   displacementL: sheet.displacementL,
   cylinders: sheet.cylinders,
   boosted: sheet.boosted,
   lambdaRange: { low: sheet.lambdaLow, high: sheet.lambdaHigh },
   revLimitRpm: sheet.revLimitRpm,
   stoichAfr: sheet.stoichAfr,
+  injector: {
+    mgPerMs: (sheet.injectorFlowCcMin * sheet.fuelDensityGPerCc) / 60,
+    deadTimeMs: sheet.deadTimeMs,
+  },
 })
+
+/** What a log's columns and its flashed table were when it was read: changes with every reading and every answer. */
+export async function readingOf(db: Reader, logId: string): Promise<unknown> {
+  const row = await store.rowById(db, logId)
+  const flashed = row?.flashedRevisionId ? await tableById(db, row.flashedRevisionId) : null
+  return [row?.sha256, row?.attempt, row?.mapping, row?.number, flashed?.checksum]
+}
 
 const multiplier = (percent: Float64Array | undefined): Float64Array | undefined =>
   percent?.map((value) => 1 + value / 100)
@@ -384,6 +396,7 @@ export async function loadDrive({ db, pool }: Pick<Deps, 'db' | 'pool'>, logId: 
   const present = Object.fromEntries(Object.entries(optional).filter(([, values]) => values !== undefined))
   return {
     id: row.id,
+    number: row.number,
     timeS: need('time'),
     rpm: need('rpm'),
     mapKpa: need('map'),

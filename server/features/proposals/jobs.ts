@@ -1,45 +1,12 @@
 /** Learning in the background: frozen inputs in, a surface or a reason out; cancelled and stale work writes nothing. */
 import { z } from 'zod'
-import type { Proposal } from '../../../shared/contract/proposals.ts'
-import { toWire } from '../../../shared/wire.ts'
-import type { Learned } from '../../core/learn.ts'
 import type { Deps } from '../../deps.ts'
 import type { JobDefinition } from '../../platform/queue/run.ts'
-import { factsOf, loadDrive } from '../logs/service.ts'
-import { tableById } from '../tables/service.ts'
-import { currentSheet } from '../vehicles/service.ts'
+import { frozenInputs, learnLogs, surfaceOf } from './learning.ts'
 import * as store from './store.ts'
 
 const Payload = z.object({ proposalId: z.string() })
 const watchMs = 500
-
-function surfaceOf(learned: Learned): NonNullable<Proposal['surface']> {
-  return {
-    grid: { rpm: [...learned.grid.rpm], mapKpa: [...learned.grid.mapKpa] },
-    current: toWire(learned.current),
-    proposed: toWire(learned.proposed),
-    fitted: toWire(learned.fitted),
-    evidenceS: toWire(learned.evidenceS),
-    sigmaPct: toWire(learned.sigmaPct),
-    misfitPct: toWire(learned.misfitPct),
-    handNearest: toWire(learned.handNearest),
-    handBilinear: toWire(learned.handBilinear),
-    held: [...learned.held],
-    leftOut: learned.leftOut.map(({ driveId, ...rest }) => ({ logId: driveId, ...rest })),
-    delay: learned.delay,
-  }
-}
-
-async function inputOf(deps: Deps, row: store.ProposalRow) {
-  const base = await tableById(deps.db, row.baseRevisionId)
-  const target = await tableById(deps.db, row.targetRevisionId)
-  const sheet = await currentSheet(deps.db, row.vehicleId)
-  if (!base || !target || !sheet) throw new Error(`the frozen inputs of proposal ${row.id} are gone`)
-  const logs = await store.logsOf(deps.db, row.id)
-  const drives = await Promise.all(logs.map((log) => loadDrive(deps, log.id, target)))
-  const stepCapPct = Number(row.settings['stepCapPct'] ?? 20)
-  return { drives, engine: factsOf(sheet), grid: base.grid, current: base.values, settings: { stepCapPct } }
-}
 
 async function learnProposal(deps: Deps, proposalId: string, signal: AbortSignal): Promise<void> {
   const row = await store.rowById(deps.db, proposalId)
@@ -47,7 +14,8 @@ async function learnProposal(deps: Deps, proposalId: string, signal: AbortSignal
   const say = (patch: Partial<store.ProposalRow>) =>
     store.updateFrom(deps.db, proposalId, ['queued', 'learning'], patch)
   await say({ state: 'learning', step: 'Fetching the logs', progress: 0.05 })
-  const input = await inputOf(deps, row)
+  const frozen = await frozenInputs(deps, row)
+  const logs = await store.logsOf(deps.db, row.id)
   // A person may cancel while the thread works: the state is looked at, and the thread ended when it changed.
   const stop = new AbortController()
   let latest: { step: string; progress: number } | null = null
@@ -63,22 +31,23 @@ async function learnProposal(deps: Deps, proposalId: string, signal: AbortSignal
       .catch(() => undefined)
   }, watchMs)
   try {
-    const result = await deps.crunch.learn(
-      input,
-      (step, done, total) => {
-        latest = { step, progress: 0.1 + (0.85 * done) / total }
+    const result = await learnLogs(
+      deps,
+      frozen,
+      logs.map((log) => log.id),
+      {
+        signal: AbortSignal.any([signal, stop.signal]),
+        progress: (step, done, total) => {
+          latest = { step, progress: 0.1 + (0.85 * done) / total }
+        },
       },
-      AbortSignal.any([signal, stop.signal]),
     )
     if (!result.ok) {
-      const name =
-        'driveId' in result
-          ? (await store.logsOf(deps.db, proposalId)).find((log) => log.id === result.driveId)
-          : undefined
+      const named = logs.find((log) => log.id === result.driveId)
       await say({
         state: 'refused',
         progress: 1,
-        trouble: name ? `Log ${name.number}: ${result.detail}` : result.detail,
+        trouble: named ? `Log ${named.number}: ${result.detail}` : result.detail,
       })
       return
     }

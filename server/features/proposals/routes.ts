@@ -2,6 +2,7 @@
 import * as contract from '../../../shared/contract/proposals.ts'
 import type { Deps } from '../../deps.ts'
 import { on, type Binder } from '../../platform/http/on.ts'
+import * as inspect from './inspect.ts'
 import * as proposals from './service.ts'
 
 export function mountProposals(binder: Binder, deps: Deps): void {
@@ -25,4 +26,18 @@ export function mountProposals(binder: Binder, deps: Deps): void {
     binder,
     contract.makeRevision,
   )(({ actor, params, body }) => proposals.makeRevision(deps, actor, params.proposalId, body))
+  on(
+    binder,
+    contract.chooseLogs,
+  )(({ actor, params, body }) => proposals.chooseLogs(deps, actor, params.proposalId, body))
+  on(
+    binder,
+    contract.getCellSamples,
+  )(async ({ actor, params }) => ({
+    samples: await inspect.readCellSamples(deps, actor, params.proposalId, params.cell),
+  }))
+  on(
+    binder,
+    contract.replayDrive,
+  )(({ actor, params, query }) => inspect.replayForProposal(deps, actor, params.proposalId, query))
 }

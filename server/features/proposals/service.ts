@@ -7,7 +7,7 @@ import { fromWire } from '../../../shared/wire.ts'
 import { coreVersion } from '../../core/learn.ts'
 import type { Deps } from '../../deps.ts'
 import { recordAudit } from '../../platform/audit/record.ts'
-import type { Reader, Tx } from '../../platform/db/client.ts'
+import type { Reader } from '../../platform/db/client.ts'
 import { proposalLogs, proposals } from '../../platform/db/schema/proposals.ts'
 import { scopeOf, type Actor, type Scope } from '../../platform/http/actor.ts'
 import { Problem } from '../../platform/http/problem.ts'
@@ -15,6 +15,7 @@ import { enqueue } from '../../platform/queue/enqueue.ts'
 import { logsInScope } from '../logs/service.ts'
 import { appendRevision, currentTable, getRevision } from '../tables/service.ts'
 import { currentSheet, lockVehicle, vehicleInScope } from '../vehicles/service.ts'
+import { frozenInputs, learnLogs, surfaceOf, unwatched } from './learning.ts'
 import * as store from './store.ts'
 
 type Surface = NonNullable<Proposal['surface']>
@@ -60,7 +61,7 @@ async function toLine(db: Reader, { row, requester, baseNumber }: store.Proposal
     requestedBy: requester,
     requestedAt: row.createdAt.toISOString(),
     base: { id: row.baseRevisionId, number: baseNumber },
-    logs: logs.map(({ id, number, title }) => ({ id, number, title })),
+    logs: logs.map(({ id, number, title, used }) => ({ id, number, title, used })),
     counts: countsOf(row),
     revisionId: row.revisionId,
   }
@@ -166,6 +167,74 @@ export interface CellChange {
   readonly value?: number | undefined
 }
 
+/** The open proposal's surface with its logs, for looking closer. @throws Problem proposal-not-open while there is none. */
+export async function openSurface(
+  deps: Pick<Deps, 'db'>,
+  actor: Actor,
+  proposalId: string,
+): Promise<{ row: store.ProposalRow; surface: Surface; logs: Awaited<ReturnType<typeof store.logsOf>> }> {
+  const { row } = await proposalInScope(deps.db, scopeOf(actor), proposalId)
+  if (!row.surface) throw new Problem('proposal-not-open', { detail: `It is ${row.state} at the moment.` })
+  return { row, surface: row.surface, logs: await store.logsOf(deps.db, proposalId) }
+}
+
+/** The table as the decisions so far make it, VE in %. */
+export const takenTable = (row: store.ProposalRow, surface: Surface): Float64Array =>
+  fromWire(surface.current).map((_, cell) =>
+    takenValue(surface, row.decisions[cell] ?? 'open', row.byHand[cell] ?? null, cell),
+  )
+
+/**
+ * Switches logs on or off: remembered logs are added up afresh, so that switching back restores every bit. Decisions
+ * stay; a cell that lost its evidence keeps its value, one that gained some is open.
+ */
+export async function chooseLogs(
+  deps: Deps,
+  actor: Actor,
+  proposalId: string,
+  input: { version: number; logIds: string[] },
+): Promise<Proposal> {
+  const { row } = await openProposal(deps.db, actor, proposalId)
+  const all = await store.logsOf(deps.db, proposalId)
+  const chosen = all.filter((log) => input.logIds.includes(log.id))
+  if (chosen.length !== new Set(input.logIds).size) throw new Problem('not-found')
+  const learned = await learnLogs(
+    deps,
+    await frozenInputs(deps, row),
+    chosen.map((log) => log.id),
+    unwatched(),
+  )
+  if (!learned.ok) throw new Problem('input-invalid', { detail: learned.detail })
+  const surface = surfaceOf(learned.proposal)
+  return deps.db.transaction(async (tx) => {
+    const before = row.surface
+    const decisions = row.decisions.map((decision, cell): CellDecision => {
+      const had = (before?.evidenceS[cell] ?? 0) > 0
+      const has = (surface.evidenceS[cell] ?? 0) > 0
+      if (had && !has && (decision === 'accepted' || decision === 'open')) return 'kept'
+      return !had && has && decision === 'kept' ? 'open' : decision
+    })
+    const stored = await store.updateVersion(tx, proposalId, input.version, {
+      surface,
+      decisions,
+      settings: { ...row.settings, logs: chosen.map((log) => log.sha256) },
+      coreVersion,
+    })
+    if (!stored) throw new Problem('changed-meanwhile', { detail: decidedMeanwhile })
+    await store.useLogs(tx, proposalId, input.logIds)
+    await recordAudit(tx, actor, {
+      action: 'proposal.logs',
+      subject: `Proposal ${row.number}, ${chosen.length} of ${all.length} logs`,
+      vehicleId: row.vehicleId,
+      facts: { proposalId, logs: chosen.map((log) => log.sha256) },
+    })
+    return getProposal(tx, actor, proposalId)
+  })
+}
+
+const decidedMeanwhile =
+  'Somebody decided cells of this proposal since you loaded it. Load it again; nothing of theirs is lost.'
+
 /** Decides cells on the version that was seen. @throws Problem changed-meanwhile, so that nobody's decision is lost. */
 export async function decideCells(
   deps: Deps,
@@ -191,11 +260,7 @@ export async function decideCells(
       byHand[cell] = decision === 'by-hand' || decision === 'pinned' ? (value ?? null) : null
     }
     const stored = await store.updateVersion(tx, proposalId, input.version, { decisions, byHand })
-    if (!stored)
-      throw new Problem('changed-meanwhile', {
-        detail:
-          'Somebody decided cells of this proposal since you loaded it. Load it again; nothing of theirs is lost.',
-      })
+    if (!stored) throw new Problem('changed-meanwhile', { detail: decidedMeanwhile })
     await recordAudit(tx, actor, {
       action: 'proposal.decide',
       subject: `Proposal ${row.number}, ${input.cells.length} ${input.cells.length === 1 ? 'cell' : 'cells'}`,
@@ -206,7 +271,7 @@ export async function decideCells(
   })
 }
 
-async function openProposal(tx: Tx, actor: Actor, proposalId: string): Promise<store.ProposalFound> {
+async function openProposal(tx: Reader, actor: Actor, proposalId: string): Promise<store.ProposalFound> {
   const found = await proposalInScope(tx, scopeOf(actor), proposalId)
   if (found.row.state !== 'open')
     throw new Problem('proposal-not-open', { detail: `It is ${found.row.state} at the moment.` })
@@ -240,10 +305,10 @@ export async function makeRevision(
 ): Promise<Revision> {
   return deps.db.transaction(async (tx) => {
     const { row } = await openProposal(tx, actor, proposalId)
-    const { surface, decisions, byHand } = row
+    const { surface, decisions } = row
     if (!surface) throw new Problem('proposal-not-open')
     const current = fromWire(surface.current)
-    const values = current.map((_, cell) => takenValue(surface, decisions[cell] ?? 'open', byHand[cell] ?? null, cell))
+    const values = takenTable(row, surface)
     const cellsChanged = values.reduce((sum, value, cell) => sum + (value === current[cell] ? 0 : 1), 0)
     if (cellsChanged === 0) throw new Problem('nothing-accepted')
     const held = new Set(surface.held.map(({ cell }) => cell))
@@ -257,7 +322,7 @@ export async function makeRevision(
       origin: 'proposal',
       note: input.note,
       proposalId,
-      logs: await store.logsOf(tx, proposalId),
+      logs: (await store.logsOf(tx, proposalId)).filter((log) => log.used),
       settings: row.settings,
       coreVersion: row.coreVersion,
       provenance: {
@@ -270,10 +335,7 @@ export async function makeRevision(
       state: 'revised',
       revisionId: revision.id,
     })
-    if (!closed)
-      throw new Problem('changed-meanwhile', {
-        detail: 'Somebody decided cells of this proposal since you loaded it. Load it again.',
-      })
+    if (!closed) throw new Problem('changed-meanwhile', { detail: decidedMeanwhile })
     await tx.update(proposals).set({ step: '' }).where(eq(proposals.id, proposalId))
     return getRevision(tx, scopeOf(actor), revision.id)
   })

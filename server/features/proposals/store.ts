@@ -1,5 +1,5 @@
 /** The proposals noun's SQL. */
-import { and, asc, desc, eq, gt, inArray, max } from 'drizzle-orm'
+import { and, asc, desc, eq, gt, inArray, max, type SQL } from 'drizzle-orm'
 import type { ProposalState } from '../../../shared/lifecycle.ts'
 import type { Reader, Tx } from '../../platform/db/client.ts'
 import { people } from '../../platform/db/schema/accounts.ts'
@@ -51,11 +51,19 @@ export async function lastNumber(tx: Tx, vehicleId: string): Promise<number> {
 
 export const logsOf = (db: Reader, proposalId: string) =>
   db
-    .select({ id: logs.id, number: logs.number, title: logs.title, sha256: logs.sha256 })
+    .select({ id: logs.id, number: logs.number, title: logs.title, sha256: logs.sha256, used: proposalLogs.used })
     .from(proposalLogs)
     .innerJoin(logs, eq(logs.id, proposalLogs.logId))
     .where(eq(proposalLogs.proposalId, proposalId))
     .orderBy(asc(logs.number))
+
+/** Switches the proposal's logs: those named are used, the others are not. */
+export async function useLogs(tx: Tx, proposalId: string, logIds: readonly string[]): Promise<void> {
+  await tx
+    .update(proposalLogs)
+    .set({ used: inArray(proposalLogs.logId, [...logIds]) as SQL<boolean> })
+    .where(eq(proposalLogs.proposalId, proposalId))
+}
 
 /** A fuel-table revision newer than the one the proposal started from. */
 export async function newerRevision(db: Reader, row: ProposalRow, baseNumber: number) {

@@ -26,6 +26,15 @@ export async function currentSheet(db: Reader, vehicleId: string): Promise<Engin
   return { ...row.sheet, id: row.id, number: row.number, createdAt: row.createdAt.toISOString(), author }
 }
 
+/** One writing of the sheet by its number: what was learned on it is learned on it again. */
+export async function sheetNumbered(db: Reader, vehicleId: string, number: number): Promise<EngineSheetInput | null> {
+  const [row] = await db
+    .select({ sheet: engineSheets.sheet })
+    .from(engineSheets)
+    .where(and(eq(engineSheets.vehicleId, vehicleId), eq(engineSheets.number, number)))
+  return row?.sheet ?? null
+}
+
 async function toVehicle(db: Reader, row: store.VehicleRow): Promise<Vehicle> {
   const owners = await store.ownersOf(db, row.id)
   return {

@@ -2,6 +2,7 @@
 import { queryOptions, useMutation, useQueryClient } from '@tanstack/react-query'
 import {
   cancelProposal,
+  chooseLogs,
   decideCells,
   getProposal,
   listProposals,
@@ -51,6 +52,19 @@ export function useDecideCells(proposalId: string) {
     },
     // Refused because somebody else decided meanwhile: their decisions are fetched before anything more is sent.
     onError: () => client.invalidateQueries({ queryKey: proposalQueries.detail(proposalId).queryKey }),
+  })
+}
+
+/** Switches logs on or off; the answer is the proposal with its new surface. */
+export function useChooseLogs(proposalId: string) {
+  const client = useQueryClient()
+  const { queryKey } = proposalQueries.detail(proposalId)
+  return useMutation({
+    mutationFn: (body: { version: number; logIds: string[] }) => call(chooseLogs, { params: { proposalId }, body }),
+    onSuccess: (proposal) => {
+      client.setQueryData(queryKey, proposal)
+    },
+    onError: () => client.invalidateQueries({ queryKey }),
   })
 }
 

@@ -39,6 +39,15 @@ const markOf = (decided: Decided, cell: number): HeatmapMark | null => {
   return state === 'accepted' || state === 'none' ? null : state
 }
 
+/** Faults that look like a wrong table, by what they look like. */
+const diagnosisHead: Readonly<Record<string, string>> = {
+  scale: 'One factor over the whole table',
+  'dead-time': 'Looks like injector dead time',
+  'exhaust-leak': 'Looks like an exhaust leak',
+  'injector-flow': 'Injector flow does not add up',
+  'injector-dead-time': 'Dead time does not add up',
+}
+
 /** Before the first selection the card speaks of the first open cell. */
 const firstOpen = (decided: Decided): number =>
   Math.max(
@@ -127,7 +136,15 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
       {decisions.problem ? <Banner title={decisions.problem.message}>The page shows what is stored.</Banner> : null}
       <div className="mt-6 grid gap-x-8 gap-y-6 laptop:grid-cols-[minmax(0,1fr)_var(--leaf-margin)] desk:grid-cols-[var(--leaf-rail)_minmax(0,1fr)_var(--leaf-margin)]">
         <div className="order-3 laptop:order-none laptop:col-start-1 desk:border-r desk:border-rule desk:pr-6">
-          <LogsRail proposal={proposal} vehicleId={vehicleId} />
+          <LogsRail proposal={proposal} vehicleId={vehicleId} maySwitch={mayDecide && !decisions.pending} />
+          {proposal.surface.diagnoses.map((diagnosis) => (
+            <div key={diagnosis.kind} className="mt-5">
+              <Note icon="caution" kind="caution" head={diagnosisHead[diagnosis.kind] ?? 'Something besides the table'}>
+                <p>{diagnosis.detail}</p>
+                <p>{diagnosis.lookAt}</p>
+              </Note>
+            </div>
+          ))}
           <p className="mt-4">
             <ButtonLink variant="word" to={paths.workbenchStart(vehicleId)}>
               Learn from other logs

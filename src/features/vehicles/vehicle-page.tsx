@@ -135,7 +135,7 @@ export default function VehiclePage() {
                 },
                 {
                   label: 'learned from',
-                  value: formatNumber(surface.leftOut.reduce((sum, log) => sum + log.usedS, 0) / 60),
+                  value: formatNumber(surface.logs.reduce((sum, log) => sum + log.usedS, 0) / 60),
                   unit: 'min',
                 },
               ]}

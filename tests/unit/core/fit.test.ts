@@ -2,11 +2,11 @@
 import { CholeskyDecomposition, Matrix } from 'ml-matrix'
 import { describe, expect, test } from 'vitest'
 import type { Drive, EngineFacts } from '../../../server/core/drive.ts'
-import { airFlowKgS } from '../../../server/core/evidence/samples.ts'
+import { airFlowKgS } from '../../../server/core/model/airflow.ts'
 import { factorInPlace, inverseDiagonal, solveInto } from '../../../server/core/fit/cholesky.ts'
-import { autocorrelationInflation, robustSd } from '../../../server/core/fit/estimate.ts'
+import { autocorrelationInflation, robustSd } from '../../../server/core/fit/noise.ts'
 import { guard } from '../../../server/core/fit/guard.ts'
-import { smoothPrior } from '../../../server/core/fit/prior.ts'
+import { priorOf, priorParts } from '../../../server/core/fit/prior.ts'
 import { learn, type LearnInput } from '../../../server/core/learn.ts'
 import { seeded } from '../../../sample-logs/simulator/random.ts'
 import { cornerAt, valueAt, type Grid } from '../../../shared/grid.ts'
@@ -89,7 +89,7 @@ describe('Cholesky', () => {
 
 describe('noise', () => {
   test('1.4826 times the median absolute residual of seven values with MAD 0.015 (R, stats::mad)', () => {
-    expect(robustSd([Float64Array.from([0.015, -0.015, 0.001, 0.02, -0.03, 0.015, -0.014])])).toBeCloseTo(
+    expect(robustSd(Float64Array.from([0.015, -0.015, 0.001, 0.02, -0.03, 0.015, -0.014]))).toBeCloseTo(
       1.4826 * 0.015,
       12,
     )
@@ -313,7 +313,7 @@ describe('the lean guard', () => {
 describe('the prior', () => {
   test('its mean is the flashed table where that is smooth, and it is symmetric and positive definite', () => {
     const flat = new Float64Array(n).fill(Math.log(70))
-    const { precision, pull } = smoothPrior(grid, flat, { curvature: 1.25, gradient: 1 })
+    const { precision, pull } = priorOf(priorParts(grid), flat, { curvature: 1.25, gradient: 1 })
     for (let i = 0; i < n; i += 1)
       for (let j = 0; j < n; j += 1) expect(precision[i * n + j]).toBeCloseTo(precision[j * n + i]!, 6)
     const l = precision.slice()

@@ -1,9 +1,9 @@
 /** Tables of the proposals noun: frozen inputs, the learned surface, decisions. */
-import { doublePrecision, integer, jsonb, pgTable, primaryKey, text, unique, uuid } from 'drizzle-orm/pg-core'
+import { boolean, doublePrecision, integer, jsonb, pgTable, primaryKey, text, unique, uuid } from 'drizzle-orm/pg-core'
 import type { Proposal } from '../../../../shared/contract/proposals.ts'
 import type { CellDecision, ProposalState } from '../../../../shared/lifecycle.ts'
 import { people } from './accounts.ts'
-import { createdAt, id, instant } from './columns.ts'
+import { bytes, createdAt, id, instant } from './columns.ts'
 import { logs } from './logs.ts'
 import { revisions } from './tables.ts'
 import { vehicles } from './vehicles.ts'
@@ -52,6 +52,19 @@ export const proposalLogs = pgTable(
     logId: uuid()
       .notNull()
       .references(() => logs.id),
+    /** False for a log that was switched off on the workbench. */
+    used: boolean().notNull().default(true),
   },
   (table) => [primaryKey({ columns: [table.proposalId, table.logId] })],
 )
+
+/** What the learner remembers of a log: its quadratic form, so that logs add up without their samples. */
+export const logMemories = pgTable('log_memories', {
+  logId: uuid()
+    .primaryKey()
+    .references(() => logs.id, { onDelete: 'cascade' }),
+  /** SHA-256 of everything the form depends on; another key means it must be taken again. */
+  key: text().notNull(),
+  memory: bytes().notNull(),
+  createdAt: createdAt(),
+})
