@@ -31,7 +31,7 @@ export interface DemoVehicle {
 }
 
 /** A table set by hand: the truth, off by a factor that grows and shrinks in plateaus, in whole and half numbers. */
-function handMade(
+export function handMade(
   engine: SimulatedEngine,
   grid: Grid,
   seed: number,
@@ -46,7 +46,7 @@ function handMade(
   })
 }
 
-const targetsOf = (grid: Grid, at: (rpm: number, mapKpa: number) => number): Float64Array =>
+export const targetsOf = (grid: Grid, at: (rpm: number, mapKpa: number) => number): Float64Array =>
   Float64Array.from({ length: grid.rpm.length * grid.mapKpa.length }, (_, i) =>
     at(grid.rpm[i % grid.rpm.length]!, grid.mapKpa[Math.floor(i / grid.rpm.length)]!),
   )

@@ -21,6 +21,12 @@ export interface SimulationInput {
   readonly closedLoop?: boolean
   /** A sensor that sends nothing. */
   readonly dead?: 'iat'
+  /** Air that a leak lets into the exhaust before the sensor, kg/s. */
+  readonly leakKgS?: number
+  /** Dead time the controller reckons with, less the injectors' own, ms. */
+  readonly deadTimeErrorMs?: number
+  /** False takes away noise, drift and the level of the drive: what is left is the physics. */
+  readonly noisy?: boolean
 }
 
 /** Column title to readings, all the same length. */
@@ -52,7 +58,8 @@ export function simulate(input: SimulationInput): SimulatedLog {
     rows[title] ??= []
     rows[title].push(Number(value.toFixed(places)))
   }
-  const offset = 1 + 0.005 * random.normal()
+  const scatter = input.noisy === false ? 0 : 1
+  const offset = 1 + scatter * 0.005 * random.normal()
   let drift = 0
   let film = 0
   let ect = input.startC
@@ -72,7 +79,7 @@ export function simulate(input: SimulationInput): SimulatedLog {
     const iatTrue = 22 + 8 * Math.exp(-rpm / 2500)
     const pulsation = 0.7 * Math.sin(2 * Math.PI * ((rpm / 120) * engine.cylinders) * t)
     // Pressure is sampled a little late and noisily; the controller sees what the sensor says.
-    const mapSeen = mapKpa + pulsation * 0.4 + 0.25 * random.normal()
+    const mapSeen = mapKpa + scatter * (pulsation * 0.4 + 0.25 * random.normal())
     const warm = Math.max(0, (70 - ect) * 0.0045)
     const after = Math.max(0, 0.25 * (1 - t / 20))
     const before = moments[Math.max(0, n - 12)]!
@@ -87,29 +94,32 @@ export function simulate(input: SimulationInput): SimulatedLog {
       (ve / 100) * ((mapSeen * engine.displacementL) / (gasConstantAir * (iatTrue + 273.15)) / engine.cylinders) * 1e6
     const multiplier = (1 + warm) * (1 + after) * (1 + accel) * (1 + trim)
     const fuelMg = cut ? 0 : (airAssumedMg / engine.stoichAfr / wanted) * multiplier
+    const deliveredMg = cut ? 0 : Math.max(0, fuelMg + (input.deadTimeErrorMs ?? 0) * engine.injector.flowMgPerMs)
     // Wall film on the flow of fuel, mg per second and cylinder.
     const perSecond = rpm / 120
-    const flow = fuelMg * perSecond
+    const flow = deliveredMg * perSecond
     const keep = Math.exp(-stepS / engine.film.tauS)
     film = keep * film + (1 - keep) * engine.film.share * flow
     const flowIn = (1 - engine.film.share) * flow + film
     drift += -drift * (stepS / 40) + 0.007 * Math.sqrt((2 * stepS) / 40) * random.normal()
-    const phiPort = ((flowIn / perSecond) * engine.stoichAfr * offset * Math.exp(drift)) / airTrueMg
+    const phiPort = ((flowIn / perSecond) * engine.stoichAfr * offset * Math.exp(scatter * drift)) / airTrueMg
     mass += airTrueMg * 1e-6 * perSecond * engine.cylinders * stepS
     exhaust.push(mass)
     phis.push(phiPort)
     const reached = exhaust[Math.max(0, n - delaySteps)]! - engine.transport.massKg
     const found = delayed(exhaust, phis, reached, pointer)
     pointer = Math.max(0, Math.min(found.at, n - 1))
-    phiSensor += (1 - Math.exp(-stepS / engine.sensor.lagS)) * (found.value - phiSensor)
-    const lambda = 1 / Math.max(phiSensor, 0.2) + 0.006 * random.normal()
+    const exhaustKgS = airTrueMg * 1e-6 * perSecond * engine.cylinders
+    const arrived = found.value / (1 + (input.leakKgS ?? 0) / exhaustKgS)
+    phiSensor += (1 - Math.exp(-stepS / engine.sensor.lagS)) * (arrived - phiSensor)
+    const lambda = 1 / Math.max(phiSensor, 0.2) + scatter * 0.006 * random.normal()
     const shown = Math.min(engine.sensor.high, Math.max(engine.sensor.low, lambda))
     if (input.closedLoop && ect > 60 && !cut && mapKpa < 75)
       trim = Math.max(-0.15, Math.min(0.15, trim + 0.25 * (shown - wanted) * stepS))
     else trim *= 1 - stepS / 2
     if (n % every !== 0) return
     write('Time (s)', t, 2)
-    write('Engine speed (rpm)', rpm + 4 * random.normal(), 0)
+    write('Engine speed (rpm)', rpm + scatter * 4 * random.normal(), 0)
     write('MAP (kPa)', mapSeen, 1)
     write('Lambda', shown, 3)
     write('Target lambda', wanted, 3)

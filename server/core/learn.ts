@@ -9,8 +9,8 @@ import { inverseDiagonal } from './fit/cholesky.ts'
 import { contradictions, type Contradiction } from './fit/contradict.ts'
 import { guard, type HeldCell } from './fit/guard.ts'
 import { usualLevelSd } from './fit/log-fit.ts'
-import { priorParts, type PriorParts, type PriorScale } from './fit/prior.ts'
-import { choosePrior, gather, type Solution } from './fit/system.ts'
+import { priorOf, priorParts, type PriorParts, type PriorScale } from './fit/prior.ts'
+import { choosePrior, gather, solveSystem, type Solution } from './fit/system.ts'
 import { relinearise, rememberLog, type LogMemory } from './log-memory.ts'
 import { airFlowKgS } from './model/airflow.ts'
 import { totalDelayS, type MixturePath } from './model/path.ts'
@@ -147,19 +147,31 @@ interface Together {
 
 const levelSds = [0.003, 0.005, 0.008, 0.013, 0.02, 0.03]
 
-/** Prior by evidence; from three logs on also how much drives differ in level. */
+/**
+ * Prior by evidence; from three logs on also how much drives differ in level. One after the other: the two hardly know of
+ * each other, and together they would cost six times as much.
+ */
 function solveTogether(logs: readonly LogMemory[], base: Float64Array, parts: PriorParts): Together | null {
-  const candidates = logs.length < 3 ? [usualLevelSd] : levelSds
-  let best: { found: NonNullable<ReturnType<typeof choosePrior>>; levelSd: number; score: number } | null = null
-  for (const levelSd of candidates) {
-    const found = choosePrior(parts, base, gather(logs, base, levelSd))
-    if (!found) return null
-    const score = found.solution.lnEvidence - (Math.log(levelSd / usualLevelSd) / 0.8) ** 2 / 2
-    if (!best || score > best.score) best = { found, levelSd, score }
+  let gathered = gather(logs, base, usualLevelSd)
+  const chosen = choosePrior(parts, base, gathered)
+  if (!chosen) return null
+  const { scale } = chosen
+  let levelSd = usualLevelSd
+  let { solution } = chosen
+  if (logs.length >= 3) {
+    const prior = priorOf(parts, base, scale)
+    let best = -Infinity
+    for (const candidate of levelSds) {
+      gathered = gather(logs, base, candidate)
+      const found = solveSystem(gathered, prior)
+      const score = (found?.lnEvidence ?? -Infinity) - (Math.log(candidate / usualLevelSd) / 0.8) ** 2 / 2
+      if (!found || score <= best) continue
+      best = score
+      levelSd = candidate
+      solution = found
+    }
   }
-  if (!best) return null
-  const { found, levelSd } = best
-  return { ...found, levelSd, disagreement: contradictions(logs, base, parts, found.scale, levelSd) }
+  return { scale, solution, levelSd, disagreement: contradictions(logs, base, parts, scale, levelSd) }
 }
 
 /** Largest distance of x from where a log was linearised, over the cells it has evidence in, %. */
@@ -172,6 +184,12 @@ function farthest(memory: LogMemory, x: Float64Array): number {
 
 /** The grid cannot follow the surface better than this, ln. */
 const surfaceFloor = 0.004
+/** Where no log speaks the surface is carried on by a prior that knows engines in general, not this one, ln. */
+const extrapolationFloor = 0.012
+
+/** One standard deviation of a cell, ln; the less evidence, the more of the extrapolation's. */
+const doubtOf = (variance: number, evidenceS: number): number =>
+  Math.sqrt(variance + surfaceFloor ** 2 + extrapolationFloor ** 2 * Math.max(0, 1 - evidenceS))
 
 function propose(logs: readonly LogMemory[], ground: Ground, together: Together): Learned {
   const { grid, current, engine } = ground
@@ -183,7 +201,7 @@ function propose(logs: readonly LogMemory[], ground: Ground, together: Together)
   const hasEvidence = Uint8Array.from(evidenceS, (seconds) => (seconds >= leastEvidenceS ? 1 : 0))
   const misfit = total((log) => log.misfitSum)
   const fitted = x.map(Math.exp)
-  const sigma = inverseDiagonal(factor, n).map((variance) => Math.sqrt(variance + surfaceFloor ** 2))
+  const sigma = inverseDiagonal(factor, n).map((variance, cell) => doubtOf(variance, evidenceS[cell]!))
   const { proposed, held } = guard({
     grid,
     current,

@@ -1,5 +1,5 @@
 /** Does a log speak of the same engine as the others? A changed sensor, a leak or wrong injector data is asked about. */
-import { factorInPlace, solveInto } from './cholesky.ts'
+import { factorInPlace, forwardInto, solveInto } from './cholesky.ts'
 import { priorOf, type PriorParts, type PriorScale } from './prior.ts'
 import { gather, solveSystem, type Gathered, type PlacedForm } from './system.ts'
 
@@ -45,14 +45,19 @@ function compare(own: Gathered, othersFactor: Float64Array): Contradiction {
   const k = known.length
   if (k === 0) return { perCell: Number.NaN, cells: 0 }
   const entry = (row: number, col: number) => cells[row >= col ? row * n + col : col * n + row]!
+  // With C = (L Lᵀ)⁻¹, G C G is WᵀW for W = L⁻¹ G: half the substitutions.
   const spread = new Float64Array(k * k)
-  known.forEach((row, p) => {
+  const through = known.map((row) => {
     const column = Float64Array.from({ length: n }, (_, j) => entry(row, j))
-    const through = column.slice()
-    solveInto(through, othersFactor, n)
+    forwardInto(column, othersFactor, n)
+    return column
+  })
+  known.forEach((row, p) => {
+    const own = through[p]!
     for (let q = 0; q <= p; q += 1) {
+      const other = through[q]!
       let sum = entry(row, known[q]!)
-      for (let j = 0; j < n; j += 1) sum += through[j]! * entry(known[q]!, j)
+      for (let j = 0; j < n; j += 1) sum += own[j]! * other[j]!
       spread[p * k + q] = sum
     }
     // The cells' own sums are nearly singular where they were only visited together.

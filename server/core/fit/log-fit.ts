@@ -104,11 +104,13 @@ function weightsOf(scene: Scene, state: State, seen: ReturnType<typeof look>): F
   return weight
 }
 
-function sums(scene: Scene, state: State): { raw: RawSums; seen: ReturnType<typeof look> } {
+/** The log's sums at the present state; judges the scatter first, unless it is the first look. Mutates `state.noise`. */
+function sums(scene: Scene, state: State, isFirst = false): { raw: RawSums; seen: ReturnType<typeof look>; noise: Noise | null } {
   const seen = look(scene, state)
+  if (!isFirst) state.noise = noiseOf(scene, state, seen)
   const weight = weightsOf(scene, state, seen)
   const raw = sumUp(scene.prepared, seen.burn, seen.prediction, seen.v, state.path, scene.knots, seen.residual, weight)
-  return { raw, seen }
+  return { raw, seen, noise: state.noise }
 }
 
 function driftOf(scene: Scene, state: State, raw: RawSums, form: QuadraticForm, step: Float64Array): Float64Array {
@@ -119,20 +121,25 @@ function driftOf(scene: Scene, state: State, raw: RawSums, form: QuadraticForm, 
   })
 }
 
-/** Chooses how much the drift wanders by evidence, with the prior's scales given. */
-function chooseDriftSd(
-  raw: RawSums,
-  at: Float64Array,
-  parts: PriorParts,
-  base: Float64Array,
-  scale: PriorScale,
-): number {
+/** Chooses how much the drift wanders by evidence, the prior's scales given: uphill from the usual size. */
+function chooseDriftSd(raw: RawSums, at: Float64Array, parts: PriorParts, base: Float64Array, scale: PriorScale): number {
   const prior = priorOf(parts, base, scale)
-  const score = (sd: number) => {
-    const solution = solveSystem(gather([{ form: eliminateDrift(raw, sd), at }], at, usualLevelSd), prior)
-    return (solution?.lnEvidence ?? -Infinity) - (Math.log(sd / usualDriftSd) / 0.6) ** 2 / 2
+  const scores = new Map<number, number>()
+  const score = (index: number): number => {
+    const sd = driftSds[index]
+    if (sd === undefined) return -Infinity
+    if (!scores.has(index)) {
+      const solution = solveSystem(gather([{ form: eliminateDrift(raw, sd), at }], at, usualLevelSd), prior)
+      scores.set(index, (solution?.lnEvidence ?? -Infinity) - (Math.log(sd / usualDriftSd) / 0.6) ** 2 / 2)
+    }
+    return scores.get(index)!
   }
-  return driftSds.map((sd) => ({ sd, score: score(sd) })).reduce((a, b) => (b.score > a.score ? b : a)).sd
+  let best = driftSds.indexOf(usualDriftSd)
+  for (;;) {
+    const next = score(best + 1) > score(best - 1) ? best + 1 : best - 1
+    if (score(next) <= score(best)) return driftSds[best]!
+    best = next
+  }
 }
 
 /**
@@ -157,8 +164,7 @@ export function fitLog(
     noise: null,
   }
   for (let pass = 1; pass <= passes; pass += 1) {
-    if (pass > 1) state.noise = noiseOf(scene, state, look(scene, state))
-    const { raw } = sums(scene, state)
+    const { raw } = sums(scene, state, pass === 1)
     if (pass === passes / 2) {
       const gathered = gather([{ form: eliminateDrift(raw, state.driftSd), at: state.x }], state.x, usualLevelSd)
       state.scale = choosePrior(parts, base, gathered)?.scale ?? state.scale
@@ -193,7 +199,6 @@ export function retakeForm(prepared: Prepared, stoichAfr: number, x: Float64Arra
   }
   // Twice: the scatter is judged once with the drift still in it, and once without.
   for (let pass = 0; pass < 2; pass += 1) {
-    state.noise = noiseOf(scene, state, look(scene, state))
     const { raw } = sums(scene, state)
     state.drift = driftOf(scene, state, raw, eliminateDrift(raw, state.driftSd), new Float64Array(x.length))
   }
@@ -201,11 +206,10 @@ export function retakeForm(prepared: Prepared, stoichAfr: number, x: Float64Arra
 }
 
 function formAt(scene: Scene, state: State): LogFit {
-  state.noise = noiseOf(scene, state, look(scene, state))
-  const { raw, seen } = sums(scene, state)
-  const { path, driftSd, noise } = state
+  const { raw, seen, noise } = sums(scene, state)
+  const { path, driftSd } = state
   return {
-    nature: { path, driftSd, inflation: noise.inflation, noise: noise.robust },
+    nature: { path, driftSd, inflation: noise?.inflation ?? 1, noise: noise?.robust ?? firstSd },
     form: eliminateDrift(raw, driftSd),
     at: state.x,
     prediction: seen.prediction,

@@ -1,6 +1,6 @@
 /** How much one reading is worth: the scatter of the residual, more of it in transients, and its memory. */
 import { Role, type Prepared } from '../model/prepare.ts'
-import type { Burn, Prediction } from '../model/forward.ts'
+import { fading, type Burn, type Prediction } from '../model/forward.ts'
 
 const huberK = 1.5
 /** A scatter smaller than this is no measurement's. */
@@ -13,10 +13,18 @@ export const huberWeight = (ratio: number): number => Math.min(1, huberK / Math.
 /** Student's t with 4 degrees of freedom, as weight; for slow loggers, whose rows are biased now and then. */
 export const studentWeight = (ratio: number): number => 5 / (4 + ratio * ratio)
 
+/** Quantiles of more than this many values are taken from every second, third … of them. */
+const enough = 20_000
+
+const thinned = (values: Float64Array): Float64Array => {
+  const every = Math.ceil(values.length / enough)
+  return every > 1 ? Float64Array.from({ length: Math.floor(values.length / every) }, (_, i) => values[i * every]!) : values.slice()
+}
+
 /** 1.4826 times the median absolute value: the standard deviation of the normal part. */
 export function robustSd(residual: Float64Array): number {
   if (residual.length === 0) return leastSd
-  const sorted = residual.map(Math.abs).sort()
+  const sorted = thinned(residual).map(Math.abs).sort()
   return Math.max(leastSd, 1.4826 * sorted[sorted.length >> 1]!)
 }
 
@@ -58,9 +66,10 @@ export function stirOf(prepared: Prepared, burn: Burn, prediction: Prediction, l
       rate[i] = Math.abs(Math.log((airPerVe[i]! * burn.ve[i]!) / (airPerVe[i - 1]! * burn.ve[i - 1]!))) / dtS[i]!
   }
   const stir = new Float64Array(n)
+  const fade = fading(lagS)
   for (let i = 0; i < n; i += 1) {
     const arrived = rate[prediction.source[i]!]!
-    const keep = i > 0 && dtS[i]! > 0 && lagS > 0 ? Math.exp(-dtS[i]! / lagS) : 0
+    const keep = i > 0 ? fade(dtS[i]!) : 0
     stir[i] = keep * (i > 0 ? stir[i - 1]! : 0) + (1 - keep) * arrived
   }
   return stir
@@ -78,19 +87,28 @@ export function transientSd(
   residual: Float64Array,
 ): Float64Array {
   const { n, role } = prepared
-  const speaks = (i: number) => role[i] === Role.speaks && prediction.clear[i] === 1
-  const order = stir.filter((_, i) => speaks(i)).sort()
+  const speaking = new Float64Array(n)
+  const stirred = new Float64Array(n)
+  let total = 0
+  for (let i = 0; i < n; i += 1) {
+    if (role[i] !== Role.speaks || prediction.clear[i] === 0) continue
+    speaking[total] = residual[i]!
+    stirred[total] = stir[i]!
+    total += 1
+  }
+  const order = thinned(stirred.subarray(0, total)).sort()
   const edges = transientQuantiles.map((share) => order[Math.floor(share * order.length)] ?? Infinity)
-  const binOf = (value: number) => edges.filter((edge) => value > edge).length
-  const clip = 4 * robustSd(residual.filter((_, i) => speaks(i)))
+  const clip = 4 * robustSd(speaking.subarray(0, total))
   const square = new Float64Array(edges.length + 1)
   const count = new Float64Array(edges.length + 1)
   const bins = new Uint8Array(n)
   for (let i = 0; i < n; i += 1) {
-    bins[i] = binOf(stir[i]!)
-    if (!speaks(i)) continue
-    square[bins[i]!]! += Math.min(Math.abs(residual[i]!), clip) ** 2
-    count[bins[i]!]! += 1
+    let bin = 0
+    while (bin < edges.length && stir[i]! > edges[bin]!) bin += 1
+    bins[i] = bin
+    if (role[i] !== Role.speaks || prediction.clear[i] === 0) continue
+    square[bin]! += Math.min(Math.abs(residual[i]!), clip) ** 2
+    count[bin]! += 1
   }
   const sd = new Float64Array(edges.length + 1)
   sd.forEach((_, bin) => {

@@ -13,6 +13,8 @@ const scatter = 1.5 * 0.015
 /** About how many readings in a row say the same. */
 const repetition = 8
 const iterations = 12
+/** In units of log likelihood: one standard deviation is worth 0.5. */
+const enoughGain = 0.02
 
 const clipped = (values: readonly number[]): MixturePath =>
   Object.fromEntries(
@@ -24,7 +26,8 @@ const clipped = (values: readonly number[]): MixturePath =>
  * The table stays fixed. O(samples · 6 · iterations).
  * @param drift  ln, at every sample.
  */
-export function fitPath(prepared: Prepared, burn: Burn, drift: Float64Array, from: MixturePath): MixturePath {
+export function fitPath(whole: Prepared, wholeBurn: Burn, wholeDrift: Float64Array, from: MixturePath): MixturePath {
+  const { prepared, burn, drift } = atEnoughRate(whole, wholeBurn, wholeDrift)
   const { n, role, lnLambda } = prepared
   const prediction = emptyPrediction(n)
   const spokenFor = new Uint8Array(n)
@@ -68,12 +71,46 @@ export function fitPath(prepared: Prepared, burn: Burn, drift: Float64Array, fro
         residual = triedResidual
         cost = triedCost
         damping /= 5
-        if (gain < 1e-3) return path
+        if (gain < enoughGain) return path
       } else damping *= 6
     }
     if (!isBetter) return path
   }
   return path
+}
+
+/** Delays are tens of milliseconds; readings closer together than this add work, not knowledge. */
+const enoughHz = 25
+
+/** Every k-th sample of a fast log; film and lag take the longer steps as they are. */
+function atEnoughRate(prepared: Prepared, burn: Burn, drift: Float64Array) {
+  const every = Math.floor(1 / (enoughHz * prepared.medianDtS))
+  if (every < 2) return { prepared, burn, drift }
+  const kept: number[] = []
+  // A restart keeps its first sample, so that no step bridges it.
+  for (let i = 0, next = 0; i < prepared.n; i += 1) {
+    if (prepared.dtS[i] === 0) next = i
+    if (i !== next) continue
+    kept.push(i)
+    next = i + every
+  }
+  const pick = (values: Float64Array) => Float64Array.from(kept, (i) => values[i]!)
+  const timeS = pick(prepared.timeS)
+  return {
+    drift: pick(drift),
+    burn: { ve: pick(burn.ve), massKg: pick(burn.massKg) },
+    prepared: {
+      ...prepared,
+      n: kept.length,
+      timeS,
+      dtS: timeS.map((time, k) => (prepared.dtS[kept[k]!] === 0 ? 0 : time - timeS[k - 1]!)),
+      asked: pick(prepared.asked),
+      airPerVe: pick(prepared.airPerVe),
+      lnLambda: pick(prepared.lnLambda),
+      role: Uint8Array.from(kept, (i) => prepared.role[i]!),
+      sinceCutS: pick(prepared.sinceCutS),
+    },
+  }
 }
 
 /** Normal equations of the pseudo-Huber cost and the prior, in units of the prior's sd: 5 × 5 and 5. */

@@ -51,19 +51,36 @@ export const emptyPrediction = (n: number): Prediction => ({
   clear: new Uint8Array(n),
 })
 
+/**
+ * How much of a first-order state is left after a step: exp(−dt / tau), 0 where the log starts afresh or there is no lag.
+ * Steps mostly repeat, so the last answer is kept.
+ */
+export function fading(tauS: number): (dtS: number) => number {
+  let lastDt = Number.NaN
+  let last = 0
+  return (dt) => {
+    if (dt !== lastDt) {
+      lastDt = dt
+      last = dt > 0 && tauS > 0 ? Math.exp(-dt / tauS) : 0
+    }
+    return last
+  }
+}
+
 /** Equivalence ratio that leaves the valves: asked fuel by way of the wall, over air. Mutates `phi`. */
 function portPhiInto(phi: Float64Array, prepared: Prepared, ve: Float64Array, path: MixturePath): void {
   const { n, dtS, asked, airPerVe } = prepared
+  const fade = fading(path.filmTauS)
   let film = 0
+  let before = 0
   for (let i = 0; i < n; i += 1) {
     const fuel = asked[i]! * airPerVe[i]!
-    if (dtS[i] === 0) film = path.filmShare * fuel
-    else {
-      const keep = Math.exp(-dtS[i]! / path.filmTauS)
-      // The flow of the sample before is what fed the film over the step.
-      film = keep * film + (1 - keep) * path.filmShare * asked[i - 1]! * airPerVe[i - 1]!
-    }
+    const dt = dtS[i]!
+    const keep = fade(dt)
+    // The flow of the sample before is what fed the film over the step; a log that starts afresh starts in balance.
+    film = dt === 0 ? path.filmShare * fuel : keep * film + (1 - keep) * path.filmShare * before
     phi[i] = ((1 - path.filmShare) * fuel + film) / (airPerVe[i]! * ve[i]!)
+    before = fuel
   }
 }
 
@@ -81,6 +98,7 @@ export function predictInto(out: Prediction, prepared: Prepared, burn: Burn, pat
   let atTime = 0
   let atMass = 0
   let shown = 0
+  const fade = fading(path.lagS)
   for (let i = 0; i < n; i += 1) {
     const dt = dtS[i]!
     if (dt === 0) start = atTime = atMass = i
@@ -94,7 +112,7 @@ export function predictInto(out: Prediction, prepared: Prepared, burn: Burn, pat
     source[i] = atMass
     share[i] = a
     const arrived = a > 0 ? phi[atMass]! + a * (phi[atMass + 1]! - phi[atMass]!) : phi[atMass]!
-    shown = dt === 0 || path.lagS <= 0 ? arrived : shown + (1 - Math.exp(-dt / path.lagS)) * (arrived - shown)
+    shown = arrived + fade(dt) * (shown - arrived)
     lnPhi[i] = Math.log(shown)
     const isSettled = sinceCutS[atMass]! > settleAfterCutS && (a === 0 || sinceCutS[atMass + 1]! > settleAfterCutS)
     clear[i] = isKnown && isSettled && shown > 0.2 ? 1 : 0
@@ -144,6 +162,7 @@ export function walkRows(
     values: new Float64Array(prepared.cellCount),
     count: 0,
   }
+  const fade = fading(path.lagS)
   const add = (sample: number, factor: number) => {
     const scale = (factor * phi[sample]!) / burn.ve[sample]!
     for (let k = 4 * sample; k < 4 * sample + 4; k += 1) {
@@ -159,7 +178,7 @@ export function walkRows(
     }
   }
   for (let i = 0; i < n; i += 1) {
-    const keep = dtS[i] === 0 || path.lagS <= 0 ? 0 : Math.exp(-dtS[i]! / path.lagS)
+    const keep = fade(dtS[i]!)
     let kept = 0
     for (let k = 0; k < activeCount; k += 1) {
       const cell = active[k]!
