@@ -171,7 +171,8 @@ function solveTogether(logs: readonly LogMemory[], base: Float64Array, parts: Pr
       solution = found
     }
   }
-  return { scale, solution, levelSd, disagreement: contradictions(logs, base, parts, scale, levelSd) }
+  // With the usual spread of levels: the one just found may have been widened by the very log that disagrees.
+  return { scale, solution, levelSd, disagreement: contradictions(logs, base, parts, scale, usualLevelSd) }
 }
 
 /** Largest distance of x from where a log was linearised, over the cells it has evidence in, %. */

@@ -31,7 +31,13 @@ function scores(): readonly Score[] {
   scored ??= everySeed.map((scenario) => {
     const { plant } = scenario
     const drive = driveScenario(scenario)
-    const result = learn({ drives: [drive], engine: plant.facts, grid: plant.grid, current: plant.start, settings: openCap })
+    const result = learn({
+      drives: [drive],
+      engine: plant.facts,
+      grid: plant.grid,
+      current: plant.start,
+      settings: openCap,
+    })
     if (!result.ok) throw new Error(`${scenario.name}: ${result.detail}`)
     const { proposal } = result
     const visited = [...proposal.evidenceS.keys()].filter((cell) => proposal.evidenceS[cell]! >= 1)
@@ -76,7 +82,19 @@ function delayErrorPct({ drive, scenario, proposal, truth }: Score, share: numbe
 export function accuracy(): void {
   const group = 'accuracy'
   console.log('\naccuracy: RMS error in % of visited cells (at least 1 s of evidence) against the grid’s best table')
-  const heads = ['base', 'nearest', 'bilinear', 'Kalman', 'RLS', 'learned', 'worst', '2 sd %', 'beside', '2 sd %', 'delay %']
+  const heads = [
+    'base',
+    'nearest',
+    'bilinear',
+    'Kalman',
+    'RLS',
+    'learned',
+    'worst',
+    '2 sd %',
+    'beside',
+    '2 sd %',
+    'delay %',
+  ]
   console.log('scenario'.padEnd(26), heads.map((word) => word.padStart(9)).join(''))
   const all = scores().map((score) => {
     const { scenario, proposal, truth, visited, neighbours, drive } = score
@@ -102,8 +120,12 @@ export function accuracy(): void {
   const learned = pick((each) => each.learned)
   judge(group, 'RMS of visited cells, median', median(learned), '%', { atMost: 1 })
   judge(group, 'RMS of visited cells, any one', Math.max(...learned), '%', { atMost: 1.5 })
-  judge(group, 'ratio to the nearest-cell average, median', median(pick((e) => e.learned / e.nearest)), '', { atMost: 0.2 })
-  judge(group, 'ratio to the bilinear average, median', median(pick((e) => e.learned / e.bilinear)), '', { atMost: 0.4 })
+  judge(group, 'ratio to the nearest-cell average, median', median(pick((e) => e.learned / e.nearest)), '', {
+    atMost: 0.2,
+  })
+  judge(group, 'ratio to the bilinear average, median', median(pick((e) => e.learned / e.bilinear)), '', {
+    atMost: 0.4,
+  })
   note({ group, name: 'ratio to the Kalman peer, median', value: median(pick((e) => e.learned / e.kalman)), unit: '' })
   note({ group, name: 'ratio to the RLS peer, median', value: median(pick((e) => e.learned / e.rls)), unit: '' })
   judge(group, 'worst visited cell, median', median(pick((e) => e.worst)), '%', { atMost: 3 })
@@ -113,7 +135,9 @@ export function accuracy(): void {
   judge(group, '2-sigma coverage, mean', mean(pick((e) => e.covered)), '%', { atLeast: 90, atMost: 98 })
   judge(group, '2-sigma coverage, lowest', Math.min(...pick((e) => e.covered)), '%', { atLeast: 75 })
   ;['10', '50', '95'].forEach((share, i) =>
-    judge(group, `total delay error at ${share} % of the flows, mean`, mean(pick((e) => e.delays[i]!)), '%', { atMost: 25 }),
+    judge(group, `total delay error at ${share} % of the flows, mean`, mean(pick((e) => e.delays[i]!)), '%', {
+      atMost: 25,
+    }),
   )
 }
 
@@ -139,12 +163,26 @@ export function guardTable(): void {
   const proposed = (score: Score) => score.proposal.proposed
   const hand = (score: Score) => score.proposal.handNearest
   for (const limit of [2, 3]) {
-    note({ group, name: `visited, leaner than ${limit} %, nearest-cell average`, value: share(hand, visited, limit), unit: '%' })
-    note({ group, name: `visited, leaner than ${limit} %, without the guard`, value: share(fitted, visited, limit), unit: '%' })
-    judge(group, `visited, leaner than ${limit} %, proposed`, share(proposed, visited, limit), '%', { atMost: limit === 2 ? 1 : 0 })
+    note({
+      group,
+      name: `visited, leaner than ${limit} %, nearest-cell average`,
+      value: share(hand, visited, limit),
+      unit: '%',
+    })
+    note({
+      group,
+      name: `visited, leaner than ${limit} %, without the guard`,
+      value: share(fitted, visited, limit),
+      unit: '%',
+    })
+    judge(group, `visited, leaner than ${limit} %, proposed`, share(proposed, visited, limit), '%', {
+      atMost: limit === 2 ? 1 : 0,
+    })
   }
   const rich = scores().flatMap(({ proposal, truth, visited: cells, scenario: { plant } }) => {
-    const loaded = cells.filter((cell) => plant.grid.mapKpa[Math.floor(cell / plant.grid.rpm.length)]! >= highLoadKpa(plant.grid))
+    const loaded = cells.filter(
+      (cell) => plant.grid.mapKpa[Math.floor(cell / plant.grid.rpm.length)]! >= highLoadKpa(plant.grid),
+    )
     const cost = (values: Float64Array) => mean(errorsPct(values, truth, loaded))
     return loaded.length > 0 ? [cost(proposal.proposed) - cost(proposal.fitted)] : []
   })

@@ -29,17 +29,28 @@ export function faults(): void {
     note({ group, name: `${name}: ${verdict}`, value: result.ok ? 0 : 1, unit: '', bar: 'refused', ok: !result.ok })
   }
   const again = learnOn(plant, good)
-  const same = first.ok && again.ok && first.proposal.fitted.every((value, cell) => value === again.proposal.fitted[cell])
+  const same =
+    first.ok && again.ok && first.proposal.fitted.every((value, cell) => value === again.proposal.fitted[cell])
   note({ group, name: 'a good log’s answer after them, same bits', value: same ? 1 : 0, unit: '', bar: '1', ok: same })
 
   const truthTable = good.flashed.ve.map((_, cell) =>
-    plant.engine.trueVe(plant.grid.rpm[cell % plant.grid.rpm.length]!, plant.grid.mapKpa[Math.floor(cell / plant.grid.rpm.length)]!),
+    plant.engine.trueVe(
+      plant.grid.rpm[cell % plant.grid.rpm.length]!,
+      plant.grid.mapKpa[Math.floor(cell / plant.grid.rpm.length)]!,
+    ),
   )
   const shaped: readonly [string, string | null, Drive][] = [
     ['exhaust leak', 'exhaust-leak', driveScenario(base, truthTable, { leakKgS: 4e-4 })],
     ['dead time 0.3 ms short', 'dead-time', driveScenario(base, truthTable, { deadTimeErrorMs: -0.3 })],
     ['dead time 0.3 ms long', 'dead-time', driveScenario(base, truthTable, { deadTimeErrorMs: 0.3 })],
-    ['one factor of 12 %', 'scale', driveScenario(base, truthTable.map((ve) => 1.12 * ve))],
+    [
+      'one factor of 12 %',
+      'scale',
+      driveScenario(
+        base,
+        truthTable.map((ve) => 1.12 * ve),
+      ),
+    ],
     ['a hand-made table, no fault', null, driveScenario(base, flatbed.flashed)],
     ['a right table, no fault', null, driveScenario(base, truthTable)],
   ]
@@ -47,6 +58,13 @@ export function faults(): void {
     const result = learnOn(plant, drive)
     const said: string[] = result.ok ? result.proposal.diagnoses.map((each) => each.kind) : [result.reason]
     const ok = expected === null ? said.length === 0 : said.includes(expected)
-    note({ group, name: `${name}: ${said.join(', ') || 'nothing said'}`, value: ok ? 1 : 0, unit: '', bar: expected ?? 'nothing said', ok })
+    note({
+      group,
+      name: `${name}: ${said.join(', ') || 'nothing said'}`,
+      value: ok ? 1 : 0,
+      unit: '',
+      bar: expected ?? 'nothing said',
+      ok,
+    })
   }
 }

@@ -87,8 +87,16 @@ export function flashAndDrive(): void {
       steps.map((s) => `${s.rms.toFixed(2)} / ${s.worst.toFixed(1)} / ${s.lambdaRms.toFixed(2)}`.padStart(20)).join(''),
     )
   const remembered = runs.map(({ name, plant, habit }) => {
-    show(name, 'nearest cell', play(name, plant, habit, (proposal) => proposal.handNearest, false))
-    show(name, 'newest log only', play(name, plant, habit, (proposal) => proposal.fitted, false))
+    show(
+      name,
+      'nearest cell',
+      play(name, plant, habit, (proposal) => proposal.handNearest, false),
+    )
+    show(
+      name,
+      'newest log only',
+      play(name, plant, habit, (proposal) => proposal.fitted, false),
+    )
     const steps = play(name, plant, habit, (proposal) => proposal.fitted, true)
     show(name, 'with memory', steps)
     return steps
@@ -98,5 +106,10 @@ export function flashAndDrive(): void {
   const later = remembered.flatMap((steps) => steps.slice(1))
   judge(group, 'cell RMS after flashes 2 to 5, largest', Math.max(...later.map((s) => s.rms)), '%', { atMost: 0.85 })
   judge(group, 'worst cell after flashes 2 to 5, largest', Math.max(...later.map((s) => s.worst)), '%', { atMost: 3 })
-  note({ group, name: 'lambda RMS after the last flash, largest', value: Math.max(...remembered.map((s) => s.at(-1)!.lambdaRms)), unit: '%' })
+  note({
+    group,
+    name: 'lambda RMS after the last flash, largest',
+    value: Math.max(...remembered.map((s) => s.at(-1)!.lambdaRms)),
+    unit: '%',
+  })
 }

@@ -26,7 +26,15 @@ export function ingest(): void {
   }, 2)
   console.log(`\ningest: ${(bytes.length / 1e6).toFixed(1)} MB, 15 columns`)
   note({ group, name: 'reading', value: bytes.length / 1e6 / ours, unit: 'MB a second' })
-  judge(group, 'speed', lines / ours, 'times', { atLeast: 0.3, stretch: 0.75, peer: 'a loop that only counts newlines' })
-  judge(group, 'speed', papa / ours, 'times', { atLeast: 20, stretch: 45, peer: 'papaparse with header and dynamicTyping' })
+  judge(group, 'speed', lines / ours, 'times', {
+    atLeast: 0.3,
+    stretch: 0.75,
+    peer: 'a loop that only counts newlines',
+  })
+  judge(group, 'speed', papa / ours, 'times', {
+    atLeast: 20,
+    stretch: 45,
+    peer: 'papaparse with header and dynamicTyping',
+  })
   notMeasured(group, 'speed', 'pandas read_csv')
 }

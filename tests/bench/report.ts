@@ -55,7 +55,9 @@ export function writeReport(): void {
   mkdirSync('.data', { recursive: true })
   writeFileSync('.data/bench.json', `${JSON.stringify(rows, null, 2)}\n`)
   const missed = rows.filter((row) => row.ok === false)
-  console.log(`\n${rows.length} rows, ${missed.length} bars not met${missed.map((row) => `\n  ${row.group}: ${row.name}`).join('')}`)
+  console.log(
+    `\n${rows.length} rows, ${missed.length} bars not met${missed.map((row) => `\n  ${row.group}: ${row.name}`).join('')}`,
+  )
 }
 
 export const median = (values: readonly number[]): number => values.toSorted((x, y) => x - y)[values.length >> 1]!

@@ -95,11 +95,25 @@ export const scenarios: readonly Scenario[] = [
   { ...twenty, name: 'six, rich, cold start', plant: richSix, habit: 'hills', seed: 103, startC: 18 },
   { ...twenty, name: 'turbo, rich, hills', plant: richTurbo, habit: 'hills', seed: 104 },
   { ...twenty, name: 'turbo, rich, track', plant: richTurbo, habit: 'track', seed: 105 },
-  { ...twenty, name: 'turbo, demo table, road', plant: { ...richTurbo, start: turboFour.flashed }, habit: 'road', seed: 106 },
+  {
+    ...twenty,
+    name: 'turbo, demo table, road',
+    plant: { ...richTurbo, start: turboFour.flashed },
+    habit: 'road',
+    seed: 106,
+  },
   { ...twenty, name: 'eight, lean, 10 Hz', plant: leanEight, habit: 'hills', rateHz: 10, seed: 107 },
   { ...twenty, name: 'eight, lean, track', plant: leanEight, habit: 'track', rateHz: 10, seed: 108 },
   { ...twenty, name: 'eight, 8 x 8 table', plant: coarseEight, habit: 'hills', seed: 109 },
-  { ...twenty, name: 'six, closed loop, 50 Hz', plant: richSix, habit: 'hills', rateHz: 50, seed: 110, closedLoop: true },
+  {
+    ...twenty,
+    name: 'six, closed loop, 50 Hz',
+    plant: richSix,
+    habit: 'hills',
+    rateHz: 50,
+    seed: 110,
+    closedLoop: true,
+  },
 ]
 
 /** Drives the scenario. @param ve  the table in the controller, by default the one it starts with. */

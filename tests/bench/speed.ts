@@ -105,19 +105,38 @@ export function speed(): void {
   const ones = new Float64Array(prepared.n).fill(1)
   const knots = knotsFor(prepared.timeS, 10)
   const sums = timed(() => sumUp(prepared, burn, prediction, large.start, instantPath, knots, ones, ones))
-  against('normal equations of 360,000 samples, with drift knots', sums, 'normal', 'NumPy bincount, without drift', 4, 6)
+  against(
+    'normal equations of 360,000 samples, with drift knots',
+    sums,
+    'normal',
+    'NumPy bincount, without drift',
+    4,
+    6,
+  )
   for (const [side, solveBar] of [
     [16, 2],
     [32, 5],
   ] as const) {
     const n = side * side
     const banded = tableSystem(side)
-    against(`solve of a table's banded system, ${n} cells`, timed(() => solved(banded), 5), `solve${n}`, 'numpy.linalg.solve', solveBar)
+    against(
+      `solve of a table's banded system, ${n} cells`,
+      timed(() => solved(banded), 5),
+      `solve${n}`,
+      'numpy.linalg.solve',
+      solveBar,
+    )
     const dense = randomSystem(n)
     const solve = timed(() => solved(dense), 5)
     const l = solved(dense)
     const all = timed(() => inverseDiagonal(l, n), 3) + solve
-    note({ group, name: `dense solve, ${n} cells`, value: peers ? peers[`solve${n}`]! / solve : Number.NaN, unit: 'times as fast', peer: 'numpy.linalg.solve' })
+    note({
+      group,
+      name: `dense solve, ${n} cells`,
+      value: peers ? peers[`solve${n}`]! / solve : Number.NaN,
+      unit: 'times as fast',
+      peer: 'numpy.linalg.solve',
+    })
     against(`exact variances, dense, ${n} cells`, all, `variances${n}`, 'SciPy dpotri', 4, 6)
   }
 }
@@ -128,7 +147,10 @@ function tableSystem(side: number): { a: Float64Array; b: Float64Array } {
     rpm: Array.from({ length: side }, (_, i) => 600 + i * 170),
     mapKpa: Array.from({ length: side }, (_, i) => 25 + i * 2.6),
   }
-  const { precision, pull } = priorOf(priorParts(grid), new Float64Array(side * side).fill(4.3), { curvature: 1, gradient: 1 })
+  const { precision, pull } = priorOf(priorParts(grid), new Float64Array(side * side).fill(4.3), {
+    curvature: 1,
+    gradient: 1,
+  })
   return { a: precision, b: pull }
 }
 

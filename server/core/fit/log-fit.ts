@@ -105,7 +105,11 @@ function weightsOf(scene: Scene, state: State, seen: ReturnType<typeof look>): F
 }
 
 /** The log's sums at the present state; judges the scatter first, unless it is the first look. Mutates `state.noise`. */
-function sums(scene: Scene, state: State, isFirst = false): { raw: RawSums; seen: ReturnType<typeof look>; noise: Noise | null } {
+function sums(
+  scene: Scene,
+  state: State,
+  isFirst = false,
+): { raw: RawSums; seen: ReturnType<typeof look>; noise: Noise | null } {
   const seen = look(scene, state)
   if (!isFirst) state.noise = noiseOf(scene, state, seen)
   const weight = weightsOf(scene, state, seen)
@@ -122,7 +126,13 @@ function driftOf(scene: Scene, state: State, raw: RawSums, form: QuadraticForm, 
 }
 
 /** Chooses how much the drift wanders by evidence, the prior's scales given: uphill from the usual size. */
-function chooseDriftSd(raw: RawSums, at: Float64Array, parts: PriorParts, base: Float64Array, scale: PriorScale): number {
+function chooseDriftSd(
+  raw: RawSums,
+  at: Float64Array,
+  parts: PriorParts,
+  base: Float64Array,
+  scale: PriorScale,
+): number {
   const prior = priorOf(parts, base, scale)
   const scores = new Map<number, number>()
   const score = (index: number): number => {

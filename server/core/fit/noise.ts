@@ -18,7 +18,9 @@ const enough = 20_000
 
 const thinned = (values: Float64Array): Float64Array => {
   const every = Math.ceil(values.length / enough)
-  return every > 1 ? Float64Array.from({ length: Math.floor(values.length / every) }, (_, i) => values[i * every]!) : values.slice()
+  return every > 1
+    ? Float64Array.from({ length: Math.floor(values.length / every) }, (_, i) => values[i * every]!)
+    : values.slice()
 }
 
 /** 1.4826 times the median absolute value: the standard deviation of the normal part. */
