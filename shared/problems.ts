@@ -32,6 +32,7 @@ export const problems = {
   'nothing-accepted': { status: 409, title: 'No cell changes: accept or set at least one' },
   'move-not-legal': { status: 409, title: 'The revision is not in a state that allows this' },
   'revision-already-signed': { status: 409, title: 'This revision is already signed' },
+  'not-signed': { status: 409, title: 'This revision is not signed' },
   'own-revision': { status: 403, title: 'Somebody else must sign a revision you prepared' },
   'comments-open': { status: 409, title: 'A comment of yours is still open' },
   'server-busy': { status: 503, title: 'The server cannot do this at the moment' },

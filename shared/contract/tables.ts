@@ -59,6 +59,8 @@ export const CellProvenance = z.object({
 })
 
 export const Revision = RevisionLine.extend({
+  /** With the SHA-256 of each log's file as it was when it was learned from. */
+  logs: z.array(z.object({ id: Id, number: z.number().int(), title: z.string(), sha256: z.string() })),
   grid: GridShape,
   values: Numbers,
   parentValues: Numbers.nullable(),
@@ -117,7 +119,9 @@ export const markFlashed = endpoint({
   method: 'POST',
   path: '/api/revisions/:revisionId/flashed',
   access: 'table:edit',
-  summary: 'Record that this revision is now in the engine',
+  summary: 'Record that this revision is now in the engine; an unsigned one only when that is said',
   params: RevisionRef,
+  /** `unsigned: true` says that the caller knows nobody has signed it; without it an unsigned revision is refused. */
+  body: z.strictObject({ unsigned: z.boolean().default(false) }),
   response: Revision,
 })

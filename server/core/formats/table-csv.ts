@@ -1,11 +1,20 @@
 /** A revision as CSV: the table itself, and remarks that carry its state and checksum; it reads back to the same values. */
 import type { Grid } from '../../../shared/grid.ts'
+import { writeMap, type MapUnit } from './map-unit.ts'
 
 export interface TableExport {
   readonly grid: Grid
   readonly values: ArrayLike<number>
   readonly axes: 'rpm-across' | 'rpm-down'
   readonly decimal: 'point' | 'comma'
+  /** Decimal places of every value; without it as many as reading back to the same double takes. */
+  readonly places?: number | undefined
+  /** Unit of the MAP axis; kPa without it. */
+  readonly mapUnit?: MapUnit
+  /** Set where a target is written as air-fuel ratio: the ratio of lambda 1. Needs `places`. */
+  readonly stoichAfr?: number | undefined
+  /** Cells for the clipboard are parted by tabs. */
+  readonly tabs?: boolean
   /** Lines for the head: what, of which vehicle, in which state, with which checksum. */
   readonly remarks: readonly string[]
 }
@@ -25,27 +34,31 @@ export function canonicalText(grid: Grid, values: ArrayLike<number>): string {
 
 /** RFC 4180 quoting, and a leading apostrophe where a spreadsheet would take the text for a formula. */
 export function textField(text: string): string {
-  const flat = text.replace(/[\r\n]+/g, ' ')
-  const guarded = /^[=+\-@\t]/.test(flat) ? `'${flat}` : flat
+  const flat = text.replace(/[\r\n\t]+/g, ' ')
+  const guarded = /^[=+\-@]/.test(flat.trimStart()) ? `'${flat}` : flat
   return /[",;\n]/.test(guarded) ? `"${guarded.replaceAll('"', '""')}"` : guarded
 }
 
+const markOf = ({ tabs, decimal }: TableExport): string => (tabs ? '\t' : decimal === 'comma' ? ';' : ',')
+
 /** RFC 4180 with CRLF; with a decimal comma the fields are parted by semicolons, as spreadsheets in such places do. */
-export function tableToCsv({ grid, values, axes, decimal, remarks }: TableExport): string {
-  const mark = decimal === 'comma' ? ';' : ','
-  const number = (value: number) => (decimal === 'comma' ? String(value).replace('.', ',') : String(value))
-  const cols = grid.rpm.length
+export function tableToCsv(table: TableExport): string {
+  const { grid, values, axes, decimal, remarks, places, mapUnit = 'kPa', stoichAfr = 1 } = table
+  const mark = markOf(table)
+  const pointed = (text: string) => (decimal === 'comma' ? text.replace('.', ',') : text)
+  const rpm = grid.rpm.map((each) => pointed(String(each)))
+  const map = grid.mapKpa.map((each) => pointed(writeMap(each, mapUnit)))
+  const value = (row: number, col: number) => {
+    const number = values[row * rpm.length + col]! * stoichAfr
+    return pointed(places === undefined ? String(number) : number.toFixed(places))
+  }
   const rows = remarks.map((remark) => textField(`# ${remark}`))
   if (axes === 'rpm-across') {
-    rows.push(['kPa \\ rpm', ...grid.rpm.map(number)].join(mark))
-    grid.mapKpa.forEach((map, row) =>
-      rows.push([map, ...grid.rpm.map((_, col) => values[row * cols + col]!)].map(number).join(mark)),
-    )
+    rows.push([`${mapUnit} \\ rpm`, ...rpm].join(mark))
+    map.forEach((each, row) => rows.push([each, ...rpm.map((_, col) => value(row, col))].join(mark)))
   } else {
-    rows.push(['rpm \\ kPa', ...grid.mapKpa.map(number)].join(mark))
-    grid.rpm.forEach((rpm, col) =>
-      rows.push([rpm, ...grid.mapKpa.map((_, row) => values[row * cols + col]!)].map(number).join(mark)),
-    )
+    rows.push([`rpm \\ ${mapUnit}`, ...map].join(mark))
+    rpm.forEach((each, col) => rows.push([each, ...map.map((_, row) => value(row, col))].join(mark)))
   }
   return `${rows.join('\r\n')}\r\n`
 }

@@ -2,9 +2,18 @@
 import Papa from 'papaparse'
 import type { TableFault } from '../../../shared/contract/tables.ts'
 import type { Grid } from '../../../shared/grid.ts'
+import { mapUnitOf, readMap } from '../formats/map-unit.ts'
+import { readRevisionJson } from './read-revision-json.ts'
 
 export type TableReading =
-  | { readonly ok: true; readonly grid: Grid; readonly values: Float64Array; readonly notes: readonly string[] }
+  | {
+      readonly ok: true
+      readonly grid: Grid
+      readonly values: Float64Array
+      readonly notes: readonly string[]
+      /** Half of the last decimal place that was written, in table units: nearer than this the text cannot tell. */
+      readonly halfPlace: number
+    }
   | { readonly ok: false; readonly problems: readonly TableFault[] }
 
 export interface TableRules {
@@ -72,6 +81,11 @@ const direction = (axis: readonly number[]): 'up' | 'down' | 'neither' =>
 
 /** Reads a table. What cannot be used is said with its row and column (1-based, as in a spreadsheet) and how to mend it. */
 export function readTable(text: string, rules: TableRules): TableReading {
+  if (text.trimStart().startsWith('{')) {
+    const read = readRevisionJson(text, rules.kind)
+    const faults = read.ok ? checkAxes(read.grid.rpm, read.grid.mapKpa) : []
+    return faults.length > 0 ? { ok: false, problems: faults } : read
+  }
   const { rows, lines, comma } = rowsOf(text)
   if (rows.length < 3 || (rows[0]?.length ?? 0) < 3) {
     return {
@@ -134,7 +148,9 @@ export function readTable(text: string, rules: TableRules): TableReading {
   if (checked.length > 0) return { ok: false, problems: checked.slice(0, 20) }
 
   const rpm = (rpmAcross ? across : down).slice()
-  const mapKpa = (rpmAcross ? down : across).slice()
+  const unit = mapUnitOf(head[0] ?? '')
+  if (unit !== 'kPa') notes.push(`Manifold pressure was read as ${unit} absolute.`)
+  const mapKpa = (rpmAcross ? down : across).map((each) => readMap(each, unit))
   const at = (mapIndex: number, rpmIndex: number) =>
     rpmAcross ? values[mapIndex]![rpmIndex]! : values[rpmIndex]![mapIndex]!
   const rpmFalls = rpm[0]! > rpm[1]!
@@ -150,13 +166,27 @@ export function readTable(text: string, rules: TableRules): TableReading {
   if (rpmFalls) rpm.reverse()
   if (mapFalls) mapKpa.reverse()
   const axis = checkAxes(rpm, mapKpa)
-  return axis.length > 0 ? { ok: false, problems: axis } : { ok: true, grid: { rpm, mapKpa }, values: cells, notes }
+  return axis.length > 0
+    ? { ok: false, problems: axis }
+    : {
+        ok: true,
+        grid: { rpm, mapKpa },
+        values: cells,
+        notes,
+        halfPlace: halfPlaceOf(body) / (afr ? rules.stoichAfr : 1),
+      }
+}
+
+/** Half of the last place of the value written with the most places. */
+function halfPlaceOf(body: readonly string[][]): number {
+  const places = body.flatMap((row) => row.slice(1).map((each) => /[.,](\d+)/.exec(each)?.[1]?.length ?? 0))
+  return 0.5 * 10 ** -Math.max(...places)
 }
 
 /** True: engine speed runs along the first row. The corner may say so; else the larger numbers are rpm. */
 function whichIsRpm(corner: string, across: readonly number[], down: readonly number[]): boolean | null {
-  if (/rpm.*[\\/].*(kpa|map)/i.test(corner)) return false
-  if (/(kpa|map).*[\\/].*rpm/i.test(corner)) return true
+  if (/rpm.*[\\/].*(kpa|bar|psi|map)/i.test(corner)) return false
+  if (/(kpa|bar|psi|map).*[\\/].*rpm/i.test(corner)) return true
   const most = Math.max(...across)
   const other = Math.max(...down)
   if (most >= 1500 && other < 1000) return true

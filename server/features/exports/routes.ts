@@ -9,6 +9,14 @@ export function mountExports(binder: Binder, deps: Deps): void {
     binder,
     contract.exportTable,
   )(({ actor, params, query }) => exports.exportTable(deps, actor, params.revisionId, query))
+  on(
+    binder,
+    contract.exportCells,
+  )(({ actor, params, query }) => exports.exportCells(deps, actor, params.revisionId, query))
+  on(
+    binder,
+    contract.exportChangeSheet,
+  )(({ actor, params }) => exports.exportChangeSheet(deps, actor, params.revisionId))
   on(binder, contract.exportProvenance)(({ actor, params }) => exports.exportProvenance(deps, actor, params.revisionId))
   on(
     binder,

@@ -1,7 +1,6 @@
 /** Use cases of what leaves the product and what comes back from the controller. */
-import type { ReadBack } from '../../../shared/contract/exports.ts'
+import type { ReadBack, TableForm } from '../../../shared/contract/exports.ts'
 import type { Revision } from '../../../shared/contract/tables.ts'
-import { sameGrid } from '../../../shared/grid.ts'
 import { fromWire } from '../../../shared/wire.ts'
 import { tableToCsv } from '../../core/formats/table-csv.ts'
 import { readTable } from '../../core/tables/read-table.ts'
@@ -9,43 +8,57 @@ import type { Deps } from '../../deps.ts'
 import { scopeOf, type Actor } from '../../platform/http/actor.ts'
 import type { FileAnswer } from '../../platform/http/on.ts'
 import { Problem } from '../../platform/http/problem.ts'
-import { getRevision, tablesOf, type Table } from '../tables/service.ts'
+import { workshopSettings } from '../accounts/service.ts'
+import { getReview } from '../reviews/service.ts'
+import { getRevision, tableById, tablesOf } from '../tables/service.ts'
 import { currentSheet, vehicleInScope } from '../vehicles/service.ts'
+import { drawChangeSheet } from './change-sheet.ts'
+import { compareReadBack } from './read-back.ts'
+import { cautions, fileName, instantWords, stateWords, tableName } from './words.ts'
 
-const cautions =
-  'A wrong fuel table can destroy an engine or start a fire. A sign-off is a record of review, not a guarantee.'
+/** AFR never reads back to the same double, so it has a stated precision: two places unless said otherwise. */
+const afrPlaces = 2
 
-function stateWords(revision: Revision): string {
-  const { signature } = revision
-  if (!signature) return 'DRAFT, NOT SIGNED'
-  return `Signed by ${signature.by.name}${signature.byAuthor ? ', its author,' : ''} on ${signature.at}`
+async function inScope(deps: Deps, actor: Actor, revisionId: string) {
+  const revision = await getRevision(deps.db, scopeOf(actor), revisionId)
+  return { revision, vehicle: await vehicleInScope(deps.db, scopeOf(actor), revision.vehicleId) }
 }
 
-const fileName = (vehicle: string, revision: Revision, ending: string): string =>
-  `${vehicle} ${revision.kind === 've' ? 'fuel table' : 'target table'} ${revision.number}${revision.signature ? '' : ' DRAFT'}.${ending}`
-    .toLowerCase()
-    .replace(/[^\w.]+/g, '-')
-    .replace('draft', 'DRAFT')
+const stoichOf = async (deps: Deps, vehicleId: string): Promise<number> =>
+  (await currentSheet(deps.db, vehicleId))?.stoichAfr ?? 14.7
 
-export async function exportTable(
-  deps: Deps,
-  actor: Actor,
-  revisionId: string,
-  options: { axes: 'rpm-across' | 'rpm-down'; decimal: 'point' | 'comma' },
-): Promise<FileAnswer> {
-  const revision = await getRevision(deps.db, scopeOf(actor), revisionId)
-  const vehicle = await vehicleInScope(deps.db, scopeOf(actor), revision.vehicleId)
+async function tableText(deps: Deps, actor: Actor, revisionId: string, form: TableForm, tabs: boolean) {
+  const { revision, vehicle } = await inScope(deps, actor, revisionId)
+  const asAfr = revision.kind === 'target' && form.target === 'afr'
+  const stoichAfr = asAfr ? await stoichOf(deps, vehicle.id) : undefined
+  const places = form.places ?? (asAfr ? afrPlaces : undefined)
+  const quantity =
+    revision.kind === 've'
+      ? 'volumetric efficiency in %'
+      : asAfr
+        ? `target AFR at a stoichiometric ratio of ${stoichAfr}`
+        : 'target lambda'
   const text = tableToCsv({
     grid: revision.grid,
     values: fromWire(revision.values),
-    ...options,
+    axes: form.axes,
+    decimal: form.decimal,
+    places,
+    mapUnit: form.map,
+    stoichAfr,
+    tabs,
     remarks: [
-      `${vehicle.name}: ${revision.kind === 've' ? 'volumetric efficiency in %' : 'target lambda'}, revision ${revision.number}`,
-      stateWords(revision),
+      `${stateWords(revision)}: ${vehicle.name}, ${tableName(revision)}, revision ${revision.number}`,
+      `${quantity}, ${places === undefined ? 'every place' : `${places} decimal places`}; MAP in ${form.map} absolute`,
       `SHA-256 of axes and values: ${revision.checksum}`,
-      cautions,
+      cautions.join(' '),
     ],
   })
+  return { revision, vehicle, text }
+}
+
+export async function exportTable(deps: Deps, actor: Actor, revisionId: string, form: TableForm): Promise<FileAnswer> {
+  const { revision, vehicle, text } = await tableText(deps, actor, revisionId, form, false)
   return {
     file: {
       name: fileName(vehicle.name, revision, 'csv'),
@@ -55,26 +68,60 @@ export async function exportTable(
   }
 }
 
+export async function exportCells(
+  deps: Deps,
+  actor: Actor,
+  revisionId: string,
+  form: TableForm,
+): Promise<{ text: string }> {
+  const { text } = await tableText(deps, actor, revisionId, form, true)
+  return { text }
+}
+
+/** Indented, but with arrays of numbers on one line; raw line ends occur only between JSON's own tokens. */
+const writeJson = (value: unknown): string =>
+  JSON.stringify(value, null, 2).replace(/\[\n[\s\d.,eE+\-nul]*\n\s*\]/g, (numbers) => numbers.replace(/\s+/g, ' '))
+
+async function parentOf(deps: Deps, revision: Revision) {
+  const parent = revision.parentId ? await tableById(deps.db, revision.parentId) : null
+  return parent ? { number: parent.number, state: parent.state, checksum: parent.checksum } : null
+}
+
 export async function exportProvenance(deps: Deps, actor: Actor, revisionId: string): Promise<FileAnswer> {
-  const revision = await getRevision(deps.db, scopeOf(actor), revisionId)
-  const vehicle = await vehicleInScope(deps.db, scopeOf(actor), revision.vehicleId)
-  const body = { vehicle: vehicle.name, stateInWords: stateWords(revision), cautions, ...revision }
+  const { revision, vehicle } = await inScope(deps, actor, revisionId)
+  const review = await getReview(deps, actor, revisionId)
+  const body = {
+    stateInWords: stateWords(revision),
+    vehicle: vehicle.name,
+    cautions,
+    ...revision,
+    parent: await parentOf(deps, revision),
+    review: { history: review.history, comments: review.comments },
+    exportedAt: deps.clock.now().toISOString(),
+  }
   return {
     file: {
       name: fileName(vehicle.name, revision, 'json'),
       type: 'application/json',
-      body: new TextEncoder().encode(JSON.stringify(body, null, 2)),
+      body: new TextEncoder().encode(writeJson(body)),
     },
   }
 }
 
-/** Half of the last place a controller shows: nearer than this is the same value. */
-const sameWithin = 1e-9
-
-const differing = (table: Table, values: Float64Array) =>
-  Array.from(values).flatMap((found, cell) =>
-    Math.abs(found - table.values[cell]!) <= sameWithin ? [] : [{ cell, expected: table.values[cell]!, found }],
-  )
+export async function exportChangeSheet(deps: Deps, actor: Actor, revisionId: string): Promise<FileAnswer> {
+  const { revision, vehicle } = await inScope(deps, actor, revisionId)
+  const { lookFirst } = await getReview(deps, actor, revisionId)
+  const body = await drawChangeSheet({
+    revision,
+    lookFirst,
+    vehicle: vehicle.name,
+    workshop: (await workshopSettings(deps.db, actor.workshopId)).name,
+    parent: await parentOf(deps, revision),
+    printed: instantWords(deps.clock.now().toISOString()),
+    printedAt: deps.clock.now(),
+  })
+  return { file: { name: fileName(vehicle.name, revision, 'pdf'), type: 'application/pdf', body } }
+}
 
 export async function checkReadBack(
   deps: Deps,
@@ -83,29 +130,8 @@ export async function checkReadBack(
   input: { text: string; kind: 've' | 'target' },
 ): Promise<ReadBack> {
   const scope = scopeOf(actor)
-  await vehicleInScope(deps.db, scope, vehicleId)
-  const sheet = await currentSheet(deps.db, vehicleId)
-  const reading = readTable(input.text, { kind: input.kind, stoichAfr: sheet?.stoichAfr ?? 14.7 })
-  if (!reading.ok) throw new Problem('table-unreadable', { detail: reading.problems[0]?.detail ?? 'It is no table.' })
-  const compared = (await tablesOf(deps.db, scope, vehicleId, input.kind))
-    .filter((table) => sameGrid(table.grid, reading.grid))
-    .map((table) => ({ table, differ: differing(table, reading.values) }))
-    .sort((a, b) => a.differ.length - b.differ.length || b.table.number - a.table.number)
-  const best = compared[0]
-  if (!best)
-    return { matches: null, closest: null, detail: 'No revision of this vehicle that you may see has these axes.' }
-  const { id, number, state } = best.table
-  if (best.differ.length === 0) {
-    const words = state === 'signed' ? 'It is signed.' : 'Nobody has signed it.'
-    return {
-      matches: { id, number, state },
-      closest: null,
-      detail: `Every one of the ${reading.values.length} cells is that of revision ${number}. ${words}`,
-    }
-  }
-  return {
-    matches: null,
-    closest: { id, number, differ: best.differ },
-    detail: `The closest is revision ${number}; ${best.differ.length} of ${reading.values.length} cells differ from it.`,
-  }
+  const vehicle = await vehicleInScope(deps.db, scope, vehicleId)
+  const read = readTable(input.text, { kind: input.kind, stoichAfr: await stoichOf(deps, vehicleId) })
+  if (!read.ok) throw new Problem('table-unreadable', { detail: read.problems[0]?.detail ?? 'It is no table.' })
+  return compareReadBack(await tablesOf(deps.db, scope, vehicleId, input.kind), read, vehicle.flashedRevisionId)
 }

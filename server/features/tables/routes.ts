@@ -21,5 +21,8 @@ export function mountTables(binder: Binder, deps: Deps): void {
     binder,
     contract.getRevision,
   )(({ actor, params }) => tables.getRevision(deps.db, scopeOf(actor), params.revisionId))
-  on(binder, contract.markFlashed)(({ actor, params }) => tables.markFlashed(deps, actor, params.revisionId))
+  on(
+    binder,
+    contract.markFlashed,
+  )(({ actor, params, body }) => tables.markFlashed(deps, actor, params.revisionId, body))
 }

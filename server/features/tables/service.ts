@@ -69,6 +69,7 @@ async function toRevision(db: Reader, found: store.RevisionFound): Promise<Revis
   const comparable = parent !== null && sameGrid(gridOf(parent), gridOf(row))
   return {
     ...toLine(found),
+    logs: row.logs,
     grid: { rpm: row.rpmAxis, mapKpa: row.mapAxis },
     values: toWire(decodeCells(row.cells)),
     parentValues: comparable ? toWire(decodeCells(parent.cells)) : null,
@@ -224,16 +225,26 @@ export async function bringTable(
   })
 }
 
-export async function markFlashed(deps: Deps, actor: Actor, revisionId: string): Promise<Revision> {
+/** @throws Problem not-signed for an unsigned revision, unless the caller says that they know. */
+export async function markFlashed(
+  deps: Deps,
+  actor: Actor,
+  revisionId: string,
+  input: { unsigned: boolean },
+): Promise<Revision> {
   const scope = scopeOf(actor)
   return deps.db.transaction(async (tx) => {
     const { row } = await revisionInScope(tx, scope, revisionId)
     if (row.kind !== 've')
       throw new Problem('move-not-legal', { detail: 'Only a fuel table is marked as in the engine.' })
+    if (row.state !== 'signed' && !input.unsigned)
+      throw new Problem('not-signed', {
+        detail: `Nobody has signed revision ${row.number}, and an unproven table can ruin an engine. Say so plainly ("unsigned": true) to record that it is in the engine all the same.`,
+      })
     await setFlashedRevision(tx, row.vehicleId, row.id)
     await recordAudit(tx, actor, {
       action: 'revision.flash',
-      subject: `Revision ${row.number}`,
+      subject: `Revision ${row.number}${row.state === 'signed' ? '' : ', not signed'}`,
       vehicleId: row.vehicleId,
       facts: { revisionId, state: row.state, checksum: row.checksum },
     })

@@ -9,8 +9,13 @@ import { useMarkFlashed } from '../tables/queries.ts'
 export function InEngine({ revision }: { revision: Revision }) {
   const [asking, setAsking] = useState(false)
   const mark = useMarkFlashed(revision.id)
-  if (revision.flashed) return <p className="mt-4">This is what the controller holds.</p>
   const signed = revision.state === 'signed'
+  if (revision.flashed)
+    return (
+      <p className={`mt-4 ${signed ? '' : 'font-semibold text-copper'}`}>
+        This is what the controller holds{signed ? '.' : ', and nobody has signed it.'}
+      </p>
+    )
   return (
     <div className="mt-4">
       <Button onClick={() => setAsking(true)}>It is in the engine now</Button>
@@ -23,10 +28,10 @@ export function InEngine({ revision }: { revision: Revision }) {
             ? 'Logs recorded from now on are compared with this table.'
             : 'Nobody has signed this revision. An unproven table can ruin an engine. Logs recorded from now on are compared with it.'
         }
-        verb="Record it"
+        verb={signed ? 'Record it' : 'Record it, not signed'}
         onConfirm={() => {
           setAsking(false)
-          mark.mutate()
+          mark.mutate(!signed)
         }}
         onClose={() => setAsking(false)}
       />

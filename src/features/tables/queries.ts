@@ -47,7 +47,7 @@ export function useBringTable(vehicleId: string) {
 export function useMarkFlashed(revisionId: string) {
   const client = useQueryClient()
   return useMutation({
-    mutationFn: () => call(markFlashed, { params: { revisionId } }),
+    mutationFn: (unsigned: boolean) => call(markFlashed, { params: { revisionId }, body: { unsigned } }),
     onSuccess: () => client.invalidateQueries(),
   })
 }
