@@ -17,6 +17,8 @@ export const comments = pgTable(
       .notNull()
       .references(() => people.id),
     text: text().notNull(),
+    /** Ids of the people it speaks to. */
+    mentions: uuid().array().notNull().default([]),
     createdAt: createdAt(),
     resolvedAt: instant(),
     resolvedById: uuid().references(() => people.id),
@@ -36,6 +38,8 @@ export const reviewMoves = pgTable(
       .notNull()
       .references(() => people.id),
     note: text().notNull().default(''),
+    /** For a sign-off: the cautions that were ticked, by their keys in shared/cautions.ts. */
+    checklist: text().array().notNull().default([]),
     createdAt: createdAt(),
   },
   (table) => [index().on(table.revisionId)],

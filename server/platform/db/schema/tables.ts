@@ -25,7 +25,7 @@ export const revisions = pgTable(
     authorId: uuid()
       .notNull()
       .references(() => people.id),
-    origin: text().$type<'upload' | 'paste' | 'proposal' | 'hand' | 'seed'>().notNull(),
+    origin: text().$type<'upload' | 'paste' | 'proposal' | 'hand' | 'seed' | 'restored'>().notNull(),
     note: text().notNull().default(''),
     rpmAxis: doublePrecision().array().notNull(),
     mapAxis: doublePrecision().array().notNull(),
