@@ -10,6 +10,7 @@ import { mountAccounts } from './features/accounts/routes.ts'
 import { identify } from './features/accounts/identify.ts'
 import { mountExports } from './features/exports/routes.ts'
 import { mountLogs } from './features/logs/routes.ts'
+import { mountNotices } from './features/notices/routes.ts'
 import { mountProposals } from './features/proposals/routes.ts'
 import { mountReviews } from './features/reviews/routes.ts'
 import { mountTables } from './features/tables/routes.ts'
@@ -72,6 +73,7 @@ export function buildApp(deps: Deps, siteDir: string | null): Express {
   }
   mountAccounts(binder, deps)
   mountVehicles(binder, deps)
+  mountNotices(binder, deps)
   mountTables(binder, deps)
   mountLogs(binder, deps)
   mountProposals(binder, deps)

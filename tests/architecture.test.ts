@@ -3,7 +3,7 @@ import { existsSync, readdirSync, readFileSync, statSync } from 'node:fs'
 import { dirname, join, relative, resolve } from 'node:path'
 import { describe, expect, test } from 'vitest'
 
-const nouns = ['accounts', 'vehicles', 'tables', 'logs', 'proposals', 'reviews', 'exports']
+const nouns = ['accounts', 'vehicles', 'notices', 'tables', 'logs', 'proposals', 'reviews', 'exports']
 /** The bench and the shell stand above the nouns in the client: they gather what all of them know. */
 const gathering = 'bench'
 

@@ -3,12 +3,13 @@ import type { AnyEndpoint } from '../endpoint.ts'
 import * as accounts from './accounts.ts'
 import * as exports from './exports.ts'
 import * as logs from './logs.ts'
+import * as notices from './notices.ts'
 import * as proposals from './proposals.ts'
 import * as reviews from './reviews.ts'
 import * as tables from './tables.ts'
 import * as vehicles from './vehicles.ts'
 
-const contracts = { accounts, vehicles, tables, logs, proposals, reviews, exports }
+const contracts = { accounts, vehicles, notices, tables, logs, proposals, reviews, exports }
 
 const isEndpoint = (value: unknown): value is AnyEndpoint =>
   typeof value === 'object' && value !== null && 'path' in value && 'method' in value && 'access' in value

@@ -34,7 +34,7 @@ export const RevisionLine = z.object({
   author: z.object({ id: Id, name: z.string() }),
   createdAt: Instant,
   note: z.string(),
-  origin: z.enum(['upload', 'paste', 'proposal', 'hand', 'seed']),
+  origin: z.enum(['upload', 'paste', 'proposal', 'hand', 'seed', 'restored']),
   logs: z.array(z.object({ id: Id, number: z.number().int(), title: z.string() })),
   cellsChanged: z.number().int(),
   /** SHA-256 of the canonical text of axes and values, hexadecimal. */

@@ -9,6 +9,7 @@ export const paths = {
   people: () => '/people',
   audit: () => '/audit',
   account: () => '/account',
+  notices: () => '/notices',
   mails: () => '/demo/mails',
   vehicles: () => '/vehicles',
   newVehicle: () => '/vehicles/new',
@@ -22,5 +23,7 @@ export const paths = {
   proposal: (vehicleId: string, proposalId: string) => `${vehicle(vehicleId)}/workbench/${proposalId}`,
   revisions: (vehicleId: string) => `${vehicle(vehicleId)}/revisions`,
   revision: (vehicleId: string, revisionId: string) => `${vehicle(vehicleId)}/revisions/${revisionId}`,
+  compareRevisions: (vehicleId: string, from: string, to: string) =>
+    `${vehicle(vehicleId)}/revisions/compare?from=${from}&to=${to}`,
   readBack: (vehicleId: string) => `${vehicle(vehicleId)}/read-back`,
 }

@@ -80,8 +80,8 @@ test('A tuner uploads a log, accepts cells, a reviewer signs, the owner sees it,
 
   const reviewer = await signedIn(browser, 'reviewer')
   await reviewer.page.goto(address)
-  await reviewer.page.getByLabel(/I have looked at the/).check()
-  await reviewer.page.getByLabel(/I know that a wrong table/).check()
+  for (const caution of await reviewer.page.getByRole('group', { name: 'Before you sign' }).getByRole('checkbox').all())
+    await caution.check()
   await expect(reviewer.page.getByRole('button', { name: 'Sign revision 2' })).toBeDisabled()
   await reviewer.page.getByLabel('Type your name to sign').fill(personOf('reviewer').name)
   await holdsUp(reviewer.page)
@@ -139,6 +139,8 @@ for (const [name, options] of [
       `${base}/revisions`,
       `${base}/revisions/${revisions[0]!.id}`,
       `${base}/read-back`,
+      '/notices',
+      `${base}/revisions/compare?from=${revisions[0]!.id}&to=${revisions[0]!.id}`,
     ]
     for (const address of pages) {
       await test.step(address, async () => {

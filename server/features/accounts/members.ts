@@ -1,6 +1,6 @@
-/** Use cases of the workshop's admin and of access tokens: people, roles, invitations, settings, the audit trail. */
+/** Use cases of the workshop's admin and of access tokens: people, roles, invitations, settings. */
 import { and, eq, isNull } from 'drizzle-orm'
-import type { AccessToken, AuditEntry, Invitation, Person, Workshop } from '../../../shared/contract/accounts.ts'
+import type { AccessToken, Invitation, Person, Workshop } from '../../../shared/contract/accounts.ts'
 import type { Role } from '../../../shared/access.ts'
 import type { Deps } from '../../deps.ts'
 import { recordAudit } from '../../platform/audit/record.ts'
@@ -8,8 +8,7 @@ import { accessTokens, invitations, memberships, sessions, workshops } from '../
 import { vehicleOwners } from '../../platform/db/schema/vehicles.ts'
 import type { Actor } from '../../platform/http/actor.ts'
 import { Problem } from '../../platform/http/problem.ts'
-import { enqueueMail } from '../../platform/mail/send.ts'
-import { invitationMessage } from './messages.ts'
+import { enqueue } from '../../platform/queue/enqueue.ts'
 import { hashSecret, newSecret } from './secrets.ts'
 import { addPerson, startSession, type Started } from './service.ts'
 import * as store from './store.ts'
@@ -96,11 +95,9 @@ export async function invite(
   input: { email: string; roles: Role[]; vehicleIds: string[] },
 ): Promise<Invitation> {
   const email = input.email.toLowerCase()
-  const secret = newSecret()
   return deps.db.transaction(async (tx) => {
     const members = await store.membersOf(tx, actor.workshopId)
     if (members.some((person) => person.email === email)) throw new Problem('already-a-member')
-    const workshop = await store.workshopById(tx, actor.workshopId)
     const owned = await tx.query.vehicles.findMany({
       where: (table, { eq: is }) => is(table.workshopId, actor.workshopId),
     })
@@ -112,17 +109,13 @@ export async function invite(
         email,
         roles: input.roles,
         vehicleIds: input.vehicleIds,
-        secretHash: hashSecret(secret),
+        // Nobody knows this secret: the job that sends the mail makes the one that works.
+        secretHash: hashSecret(newSecret()),
         invitedById: actor.personId,
         expiresAt: new Date(deps.clock.now().getTime() + weekMs),
       })
       .returning()
-    const url = `${deps.config.publicUrl}/invitation/${secret}`
-    await enqueueMail(
-      tx,
-      email,
-      invitationMessage({ inviter: actor.name, workshop: workshop.name, roles: input.roles.join(' and '), url }),
-    )
+    await enqueue(tx, 'account.send-invitation', { invitationId: row!.id })
     await recordAudit(tx, actor, { action: 'person.invite', subject: email, facts: { roles: input.roles } })
     return toInvitation(row!, actor.name)
   })
@@ -250,16 +243,4 @@ export async function revokeToken(deps: Deps, actor: Actor, tokenId: string): Pr
     if (!rows[0]) throw new Problem('not-found')
     await recordAudit(tx, actor, { action: 'token.revoke', subject: rows[0].label })
   })
-}
-
-const auditPageSize = 100
-
-export async function listAudit(
-  deps: Deps,
-  actor: Actor,
-  filter: { before?: number | undefined; vehicleId?: string | undefined; action?: string | undefined },
-): Promise<{ entries: AuditEntry[]; next: number | null }> {
-  const rows = await store.auditPage(deps.db, actor.workshopId, filter, auditPageSize)
-  const entries = rows.map(({ workshopId: _workshop, at, ...row }) => ({ ...row, at: at.toISOString() }))
-  return { entries, next: rows.length === auditPageSize ? (rows.at(-1)?.id ?? null) : null }
 }

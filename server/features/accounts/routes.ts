@@ -4,6 +4,7 @@ import type { Deps } from '../../deps.ts'
 import { on, type Binder } from '../../platform/http/on.ts'
 import type { Request, Response } from 'express'
 import { clearSessionCookie, setSessionCookie } from './identify.ts'
+import * as audit from './audit.ts'
 import * as members from './members.ts'
 import * as accounts from './service.ts'
 
@@ -101,6 +102,7 @@ export function mountAccounts(binder: Binder, deps: Deps): void {
     await members.revokeToken(deps, actor, params.tokenId)
     return done
   })
-  on(binder, contract.listAudit)(({ actor, query }) => members.listAudit(deps, actor, query))
+  on(binder, contract.listAudit)(({ actor, query }) => audit.listAudit(deps, actor, query))
+  on(binder, contract.exportAudit)(({ actor, query }) => audit.exportAudit(deps, actor, query))
   on(binder, contract.listDemoMails)(async () => ({ mails: await accounts.listDemoMails(deps) }))
 }

@@ -10,8 +10,9 @@ import { memberships, passwordResets, people, sessions, workshops } from '../../
 import type { Actor } from '../../platform/http/actor.ts'
 import { Problem } from '../../platform/http/problem.ts'
 import { enqueueMail } from '../../platform/mail/send.ts'
+import { enqueue } from '../../platform/queue/enqueue.ts'
 import { sessionDays } from './identify.ts'
-import { passwordChangedMessage, resetMessage } from './messages.ts'
+import { passwordChangedMessage } from './messages.ts'
 import { hashSecret, newSecret } from './secrets.ts'
 import * as store from './store.ts'
 import { clearTries, countTry } from './tries.ts'
@@ -95,14 +96,17 @@ export async function askPasswordReset(deps: Deps, email: string, address: strin
   await countTry(deps, [`reset:${hashSecret(email.toLowerCase())}`, `reset-from:${address}`])
   const person = await store.personByEmail(deps.db, email)
   if (!person) return
-  const secret = newSecret()
   await deps.db.transaction(async (tx) => {
-    await tx.insert(passwordResets).values({
-      personId: person.id,
-      secretHash: hashSecret(secret),
-      expiresAt: new Date(deps.clock.now().getTime() + hourMs),
-    })
-    await enqueueMail(tx, person.email, resetMessage(person.name, `${deps.config.publicUrl}/reset/${secret}`))
+    const [row] = await tx
+      .insert(passwordResets)
+      .values({
+        personId: person.id,
+        // Nobody knows this secret: the job that sends the mail makes the one that works.
+        secretHash: hashSecret(newSecret()),
+        expiresAt: new Date(deps.clock.now().getTime() + hourMs),
+      })
+      .returning({ id: passwordResets.id })
+    await enqueue(tx, 'account.send-reset', { resetId: row!.id })
   })
 }
 

@@ -1,5 +1,5 @@
 /** The accounts noun's SQL. */
-import { and, asc, count, desc, eq, gt, inArray, isNull, lt, sql } from 'drizzle-orm'
+import { and, asc, count, desc, eq, gt, inArray, isNull } from 'drizzle-orm'
 import type { Role } from '../../../shared/access.ts'
 import type { Reader, Tx } from '../../platform/db/client.ts'
 import {
@@ -11,7 +11,6 @@ import {
   sessions,
   workshops,
 } from '../../platform/db/schema/accounts.ts'
-import { auditEntries } from '../../platform/db/schema/audit.ts'
 import type { Actor } from '../../platform/http/actor.ts'
 import type { TokenActor } from './identify.ts'
 
@@ -168,27 +167,6 @@ export async function tokensOf(db: Reader, personId: string, workshopId: string)
       and(eq(accessTokens.personId, personId), eq(accessTokens.workshopId, workshopId), isNull(accessTokens.revokedAt)),
     )
     .orderBy(desc(accessTokens.createdAt))
-}
-
-export async function auditPage(
-  db: Reader,
-  workshopId: string,
-  filter: { before?: number | undefined; vehicleId?: string | undefined; action?: string | undefined },
-  limit: number,
-) {
-  return db
-    .select()
-    .from(auditEntries)
-    .where(
-      and(
-        eq(auditEntries.workshopId, workshopId),
-        filter.before === undefined ? undefined : lt(auditEntries.id, filter.before),
-        filter.vehicleId === undefined ? undefined : eq(auditEntries.vehicleId, filter.vehicleId),
-        filter.action === undefined ? undefined : sql`starts_with(${auditEntries.action}, ${filter.action})`,
-      ),
-    )
-    .orderBy(desc(auditEntries.id))
-    .limit(limit)
 }
 
 export async function namesOf(db: Reader, ids: readonly string[]): Promise<ReadonlyMap<string, string>> {

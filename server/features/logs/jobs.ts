@@ -15,7 +15,8 @@ import type { Deps } from '../../deps.ts'
 import { openDb } from '../../platform/db/client.ts'
 import { logBlocks } from '../../platform/db/schema/logs.ts'
 import type { JobDefinition } from '../../platform/queue/run.ts'
-import { currentSheet } from '../vehicles/service.ts'
+import { tell } from '../notices/service.ts'
+import { currentSheet, vehicleById } from '../vehicles/service.ts'
 import { writeChannels } from './columns.ts'
 import { headerHashOf, originalPieces } from './service.ts'
 import * as store from './store.ts'
@@ -65,7 +66,7 @@ async function readLog(deps: Deps, logId: string, signal: AbortSignal): Promise<
   await say({ state: 'reading', progress: 0.05 })
   const reading = await readOriginal(deps, logId, signal)
   if (!reading.ok) {
-    await say({ state: 'rejected', progress: 1, trouble: reading.detail })
+    await sayTrouble(deps, log, { state: 'rejected', progress: 1, trouble: reading.detail })
     return
   }
   await say({ progress: 0.6, rows: reading.rows })
@@ -94,6 +95,28 @@ async function readLog(deps: Deps, logId: string, signal: AbortSignal): Promise<
     durationS,
     rateHz,
     readAt: deps.clock.now(),
+  })
+}
+
+/** Stores why a log could not be read and tells who uploaded it; once, however often the job is tried again. */
+async function sayTrouble(
+  deps: Deps,
+  log: store.LogRow,
+  patch: Partial<store.LogRow> & { readonly trouble: string },
+): Promise<void> {
+  await deps.db.transaction(async (tx) => {
+    const written = await store.updateAttempt(tx, log.id, log.attempt, patch)
+    if (!written || log.trouble !== null) return
+    const vehicle = await vehicleById(tx, log.vehicleId)
+    await tell(deps, tx, [log.uploadedById], {
+      kind: 'log-failed',
+      workshopId: vehicle.workshopId,
+      vehicleId: vehicle.id,
+      title: `Log ${log.number} of ${vehicle.name} could not be read`,
+      words: [`“${log.title}”: ${patch.trouble}`],
+      linkWords: `Open Log ${log.number}`,
+      path: `/vehicles/${vehicle.id}/logs/${log.id}`,
+    })
   })
 }
 
@@ -133,7 +156,7 @@ export const logJobs: readonly JobDefinition[] = [
           deps.log.error({ err: error, logId }, 'a log could not be read')
           const log = await store.rowById(deps.db, logId)
           if (log) {
-            await store.updateAttempt(deps.db, logId, log.attempt, {
+            await sayTrouble(deps, log, {
               state: 'failed',
               trouble: 'Reading stopped with a fault on our side. The file is kept; try again.',
             })

@@ -2,6 +2,8 @@
 import * as contract from '../../../shared/contract/reviews.ts'
 import type { Deps } from '../../deps.ts'
 import { on, type Binder } from '../../platform/http/on.ts'
+import * as comments from './comments.ts'
+import * as history from './history.ts'
 import * as reviews from './service.ts'
 
 export function mountReviews(binder: Binder, deps: Deps): void {
@@ -16,6 +18,17 @@ export function mountReviews(binder: Binder, deps: Deps): void {
     binder,
     contract.sendBack,
   )(({ actor, params, body }) => reviews.sendBack(deps, actor, params.revisionId, body.note))
-  on(binder, contract.addComment)(({ actor, params, body }) => reviews.addComment(deps, actor, params.revisionId, body))
-  on(binder, contract.resolveComment)(({ actor, params }) => reviews.resolveComment(deps, actor, params.commentId))
+  on(
+    binder,
+    contract.addComment,
+  )(({ actor, params, body }) => comments.addComment(deps, actor, params.revisionId, body))
+  on(binder, contract.resolveComment)(({ actor, params }) => comments.resolveComment(deps, actor, params.commentId))
+  on(
+    binder,
+    contract.getHistory,
+  )(({ actor, params, query }) => history.getHistory(deps, actor, params.vehicleId, query.kind))
+  on(
+    binder,
+    contract.restoreRevision,
+  )(({ actor, params, body }) => history.restoreRevision(deps, actor, params.revisionId, body.note))
 }

@@ -1,8 +1,9 @@
 /** Use cases of tables and their revisions; later nouns append and move revisions through here. */
 import type { Revision, RevisionLine, TablePreview } from '../../../shared/contract/tables.ts'
+import { eq } from 'drizzle-orm'
 import { sameGrid, type Grid } from '../../../shared/grid.ts'
 import { revisionMoves, type RevisionMove } from '../../../shared/lifecycle.ts'
-import { toWire } from '../../../shared/wire.ts'
+import { fromWire, toWire } from '../../../shared/wire.ts'
 import { readTable } from '../../core/tables/read-table.ts'
 import type { Deps } from '../../deps.ts'
 import { recordAudit } from '../../platform/audit/record.ts'
@@ -90,6 +91,14 @@ export async function revisionInScope(db: Reader, scope: Scope, revisionId: stri
 export async function getRevision(db: Reader, scope: Scope, revisionId: string): Promise<Revision> {
   return toRevision(db, await revisionInScope(db, scope, revisionId))
 }
+
+/** True while the stored axes and cells give the checksum that was stored with them. */
+export const isIntact = ({ grid, values, checksum }: Revision): boolean =>
+  checksumOf(grid, fromWire(values)) === checksum
+
+/** Keeps a revision in its state until the transaction ends; whoever would move it waits. */
+export const holdState = (tx: Tx, revisionId: string) =>
+  tx.select({ id: revisions.id }).from(revisions).where(eq(revisions.id, revisionId)).for('share')
 
 export async function listRevisions(
   deps: Deps,

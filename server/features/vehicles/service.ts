@@ -19,6 +19,13 @@ export async function vehicleInScope(db: Reader, scope: Scope, vehicleId: string
   return vehicle
 }
 
+/** For jobs, which act for nobody: a vehicle that another row names. */
+export async function vehicleById(db: Reader, vehicleId: string): Promise<store.VehicleRow> {
+  const [vehicle] = await db.select().from(vehicles).where(eq(vehicles.id, vehicleId))
+  if (!vehicle) throw new Error(`vehicle ${vehicleId} is gone`)
+  return vehicle
+}
+
 export async function currentSheet(db: Reader, vehicleId: string): Promise<EngineSheet | null> {
   const found = await store.latestSheet(db, vehicleId)
   if (!found) return null

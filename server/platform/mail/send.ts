@@ -23,24 +23,47 @@ export const enqueueMail = (tx: Reader, to: string, message: Message): Promise<v
 const escapes: Record<string, string> = { '&': '&amp;', '<': '&lt;', '>': '&gt;', '"': '&quot;', "'": '&#39;' }
 const escapeHtml = (text: string): string => text.replace(/[&<>"']/g, (sign) => escapes[sign] ?? sign)
 
-/** The same words as plain text and as HTML: paragraphs, then at most one link. */
+const paragraph = (html: string, style = ''): string => `<p style="margin:0 0 1em;${style}">${html}</p>`
+
+/**
+ * The same words as plain text and as HTML: paragraphs, then at most one link, then why it came.
+ * The link's address stands in both as it is, so that a reader sees where it leads.
+ */
 export function writeMessage(
   subject: string,
   paragraphs: readonly string[],
   link?: { words: string; url: string },
+  foot?: string,
 ): Message {
-  const text = [...paragraphs, ...(link ? [`${link.words}: ${link.url}`] : []), 'Evenburn'].join('\n\n')
-  const body = paragraphs.map((words) => `<p>${escapeHtml(words)}</p>`).join('')
-  const anchor = link ? `<p><a href="${escapeHtml(link.url)}">${escapeHtml(link.words)}</a></p>` : ''
+  const flat = subject.replace(/\s+/g, ' ').trim()
+  const text = [
+    ...paragraphs,
+    ...(link ? [`${link.words}:\n${link.url}`] : []),
+    ['--\nEvenburn', foot].filter(Boolean).join('\n'),
+  ]
+  const body = paragraphs.map((words) => paragraph(escapeHtml(words)))
+  if (link) {
+    const url = escapeHtml(link.url)
+    body.push(
+      paragraph(`<a href="${url}" style="color:#92471c">${escapeHtml(link.words)}</a><br>
+<span style="font-size:13px;word-break:break-all">${url}</span>`),
+    )
+  }
+  body.push(
+    paragraph(
+      ['Evenburn', foot].flatMap((words) => (words ? [escapeHtml(words)] : [])).join('<br>'),
+      'font-size:13px;border-top:1px solid #918171;padding-top:.7em',
+    ),
+  )
   return {
-    subject,
-    text,
-    html: `<div style="font:16px/1.5 sans-serif;color:#2a1f18;max-width:38em">${body}${anchor}<p style="color:#6d5f54">Evenburn</p></div>`,
+    subject: flat,
+    text: text.join('\n\n'),
+    html: `<!doctype html><html lang="en"><head><meta charset="utf-8"><meta name="color-scheme" content="light dark"><title>${escapeHtml(flat)}</title></head><body style="margin:0;padding:24px"><div style="font:16px/1.5 'Source Sans 3',sans-serif;max-width:36em;margin:0 auto">${body.join('\n')}</div></body></html>`,
   }
 }
 
-/** Sends one mail. In the demo a mailbox on loopback receives it over SMTP and stores it for the mail page. */
-async function send(deps: Deps, mail: z.infer<typeof Mail>): Promise<void> {
+/** Sends one mail at once; for jobs only, which are tried again. In the demo a mailbox on loopback receives it over SMTP and stores it for the mail page. */
+export async function sendMail(deps: Deps, mail: Message & { readonly to: string }): Promise<void> {
   const mailbox = deps.config.smtpUrl === null ? await openMailbox(deps) : null
   const transport = mailbox
     ? createTransport({ host: '127.0.0.1', port: mailbox.port, secure: false, ignoreTLS: true })
@@ -79,5 +102,5 @@ async function openMailbox(deps: Deps): Promise<{ port: number; close: () => Pro
 }
 
 export const mailJobs: readonly JobDefinition[] = [
-  { name: 'mail.send', handle: async (deps, payload) => send(deps, Mail.parse(payload)) },
+  { name: 'mail.send', handle: async (deps, payload) => sendMail(deps, Mail.parse(payload)) },
 ]

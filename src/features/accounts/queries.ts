@@ -1,5 +1,11 @@
 /** Server state of people, invitations, access tokens, the audit trail and the demo's mails. */
-import { infiniteQueryOptions, queryOptions, useMutation, useQueryClient } from '@tanstack/react-query'
+import {
+  infiniteQueryOptions,
+  keepPreviousData,
+  queryOptions,
+  useMutation,
+  useQueryClient,
+} from '@tanstack/react-query'
 import type { Role } from '../../../shared/access.ts'
 import {
   changeRoles,
@@ -13,6 +19,7 @@ import {
   listInvitations,
   listPeople,
   listTokens,
+  type AuditFilter,
   readInvitation,
   removePerson,
   revokeToken,
@@ -51,14 +58,12 @@ export const accountQueries = {
       queryFn: ({ signal }) => call(listDemoMails, { signal }),
       refetchInterval: 2_000,
     }),
-  audit: (action: string) =>
+  audit: (filter: AuditFilter) =>
     infiniteQueryOptions({
-      queryKey: [...accountQueries.all(), 'audit', action],
+      queryKey: [...accountQueries.all(), 'audit', filter],
       queryFn: ({ signal, pageParam }) =>
-        call(listAudit, {
-          query: { ...(action ? { action } : {}), ...(pageParam === null ? {} : { before: pageParam }) },
-          signal,
-        }),
+        call(listAudit, { query: { ...filter, ...(pageParam === null ? {} : { before: pageParam }) }, signal }),
+      placeholderData: keepPreviousData,
       initialPageParam: null as number | null,
       getNextPageParam: (page) => page.next,
     }),

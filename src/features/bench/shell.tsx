@@ -10,6 +10,7 @@ import { paths } from '../../lib/paths.ts'
 import { meQuery } from '../../lib/session.ts'
 import { Banner } from '../../ui/banner.tsx'
 import { Loading } from '../../ui/loading.tsx'
+import { noticeQueries } from '../notices/queries.ts'
 import { vehicleQueries } from '../vehicles/queries.ts'
 import { Brand } from './brand.tsx'
 
@@ -52,6 +53,19 @@ function SignedIn({ children }: { children: (me: Me) => ReactNode }) {
   return children(me.data)
 }
 
+function NoticesLink() {
+  const unread = useQuery(noticeQueries.unread()).data ?? 0
+  return (
+    <Link
+      to={paths.notices()}
+      className={`flex min-h-6 items-center gap-1.5 hover:text-ink ${unread > 0 ? 'font-semibold text-ink' : 'text-ink-quiet'}`}
+    >
+      Notices{unread > 0 ? <span className="text-copper">{unread}</span> : null}
+      {unread > 0 ? <span className="sr-only">unread</span> : null}
+    </Link>
+  )
+}
+
 function Head({ me, below }: { me: Me; below?: (folded: boolean) => ReactNode }) {
   const [folded, setFolded] = useState(true)
   const places = allowed(me, [
@@ -75,6 +89,7 @@ function Head({ me, below }: { me: Me; below?: (folded: boolean) => ReactNode })
               Mails
             </Link>
           ) : null}
+          <NoticesLink />
           <Link to={paths.account()} className="flex min-h-6 items-center gap-1.5 text-ink-quiet hover:text-ink">
             <UserRound aria-hidden size={16} strokeWidth={1.75} />
             <span>

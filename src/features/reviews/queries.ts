@@ -2,14 +2,17 @@
 import { queryOptions, useMutation, useQueryClient } from '@tanstack/react-query'
 import {
   addComment,
+  getHistory,
   getReview,
   resolveComment,
+  restoreRevision,
   sendBack,
   signOff,
   submitRevision,
   withdrawRevision,
 } from '../../../shared/contract/reviews.ts'
-import type { Revision } from '../../../shared/contract/tables.ts'
+import type { ChecklistKey } from '../../../shared/cautions.ts'
+import type { Revision, TableKind } from '../../../shared/contract/tables.ts'
 import { call } from '../../lib/api.ts'
 
 export const reviewQueries = {
@@ -18,6 +21,11 @@ export const reviewQueries = {
     queryOptions({
       queryKey: [...reviewQueries.all(), 'detail', revisionId],
       queryFn: ({ signal }) => call(getReview, { params: { revisionId }, signal }),
+    }),
+  history: (vehicleId: string, kind: TableKind) =>
+    queryOptions({
+      queryKey: [...reviewQueries.all(), 'history', vehicleId, kind],
+      queryFn: ({ signal }) => call(getHistory, { params: { vehicleId }, query: { kind }, signal }),
     }),
 }
 
@@ -32,9 +40,12 @@ export function useReviewMoves(revisionId: string) {
   return {
     submit: useMove((note: string) => call(submitRevision, { params, body: { note } })),
     withdraw: useMove<undefined, Revision>(() => call(withdrawRevision, { params })),
-    sign: useMove((body: { name: string; checksum: string; note: string }) => call(signOff, { params, body })),
+    sign: useMove((body: { name: string; checksum: string; note: string; checklist: ChecklistKey[] }) =>
+      call(signOff, { params, body }),
+    ),
     sendBack: useMove((note: string) => call(sendBack, { params, body: { note } })),
     comment: useMove((body: { cell: number | null; text: string }) => call(addComment, { params, body })),
+    restore: useMove((note: string) => call(restoreRevision, { params, body: { note } })),
     resolve: useMove((commentId: string) => call(resolveComment, { params: { commentId } })),
   }
 }

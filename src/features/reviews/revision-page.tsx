@@ -2,6 +2,7 @@
 import { useQuery } from '@tanstack/react-query'
 import { useState } from 'react'
 import { Link, useParams } from 'react-router-dom'
+import { checklistKeys } from '../../../shared/cautions.ts'
 import type { Review } from '../../../shared/contract/reviews.ts'
 import type { Revision } from '../../../shared/contract/tables.ts'
 import { formatDateTime, formatNumber, formatSigned } from '../../lib/format.ts'
@@ -11,10 +12,11 @@ import { useCan, useMe } from '../../lib/session.ts'
 import { Banner } from '../../ui/banner.tsx'
 import { Entry, Leaf, PageHead } from '../../ui/leaf.tsx'
 import { Facts } from '../../ui/facts.tsx'
-import { Ledger } from '../../ui/ledger.tsx'
 import { Loading } from '../../ui/loading.tsx'
 import { Note } from '../../ui/note.tsx'
 import { Status } from '../../ui/status.tsx'
+import { ChangeInFigures, LookFirstSection } from './look-first-section.tsx'
+import { Restore } from './restore.tsx'
 import { AddComment, Comments } from './comments.tsx'
 import { ExportLinks } from './export-links.tsx'
 import { RevisionMap } from './revision-map.tsx'
@@ -49,6 +51,10 @@ export function changeSentence(revision: Revision): string {
   return `${formatNumber(leaner)} leaner, ${formatNumber(steps.length - leaner)} richer; the middle step is ${formatSigned(median, 1)} %, the largest ${formatSigned(Math.abs(steps[0]!) > Math.abs(steps.at(-1)!) ? steps[0]! : steps.at(-1)!, 1)} %.`
 }
 
+/** How many of the cautions were ticked before signing; nothing for the other moves. */
+const tickedWords = (ticked: number | null): string =>
+  ticked === null ? '' : `, ${ticked} of ${checklistKeys.length} cautions ticked`
+
 export default function RevisionPage() {
   const { vehicleId = '', revisionId = '' } = useParams()
   const revision = useQuery(tableQueries.detail(revisionId))
@@ -81,7 +87,7 @@ function RevisionView({ vehicleId, revision, review }: { vehicleId: string; revi
               {revision.kind === 've' ? 'Revision' : 'Targets'} {revision.number}
             </span>
             <Status state={stateWord[revision.state]} />
-            {revision.flashed ? <span>In the engine</span> : null}
+            {revision.flashed ? <span>In the engine{revision.signature ? '' : ', not signed'}</span> : null}
           </>
         }
         title={revisionSentence(revision, review)}
@@ -108,8 +114,9 @@ function RevisionView({ vehicleId, revision, review }: { vehicleId: string; revi
             },
             {
               label: 'Checksum',
-              value: `${revision.checksum.slice(0, 4)} ${revision.checksum.slice(4, 8)} … ${revision.checksum.slice(-4)}`,
+              value: `${revision.checksum.slice(0, 4)} ${revision.checksum.slice(4, 8)} … ${revision.checksum.slice(-4)}${review.intact ? '' : ', which the cells do not give'}`,
             },
+            ...(revision.coreVersion ? [{ label: 'Learned by core', value: revision.coreVersion }] : []),
             ...(revision.note ? [{ label: 'Note', value: `“${revision.note}”` }] : []),
           ]}
         />
@@ -124,7 +131,10 @@ function RevisionView({ vehicleId, revision, review }: { vehicleId: string; revi
           </p>
         ) : null}
       </Entry>
-      {review.lookFirst.length > 0 ? <LookFirst review={review} cellName={cellName} /> : null}
+      {review.summary && review.summary.changed > 0 ? <ChangeInFigures summary={review.summary} /> : null}
+      {review.lookFirst.length > 0 ? (
+        <LookFirstSection lookFirst={review.lookFirst} kind={revision.kind} cellName={cellName} onSelect={setCell} />
+      ) : null}
       <Entry
         title="The whole table"
         note={revision.parentValues ? '% against the revision before, or the values' : 'values'}
@@ -143,7 +153,9 @@ function RevisionView({ vehicleId, revision, review }: { vehicleId: string; revi
           moves={moves}
           mayResolve={(comment) => comment.author.id === me.person.id || revision.author.id === me.person.id}
         />
-        {review.may.comment ? <AddComment cell={cell} cellName={cellName} moves={moves} /> : null}
+        {review.may.comment ? (
+          <AddComment cell={cell} cellName={cellName} mentionable={review.mentionable} moves={moves} />
+        ) : null}
       </Entry>
       <Entry
         title="Sign-off"
@@ -162,6 +174,7 @@ function RevisionView({ vehicleId, revision, review }: { vehicleId: string; revi
             {review.history.map((move) => (
               <li key={`${move.at}${move.move}`}>
                 {formatDateTime(move.at)}: {move.who}, {move.move}
+                {tickedWords(move.ticked)}
                 {move.note ? ` “${move.note}”` : ''}
               </li>
             ))}
@@ -171,37 +184,8 @@ function RevisionView({ vehicleId, revision, review }: { vehicleId: string; revi
       <Entry title="Take it away">
         <ExportLinks revision={revision} />
         {mayEdit ? <InEngine revision={revision} /> : null}
+        {mayEdit ? <Restore revision={revision} vehicleId={vehicleId} /> : null}
       </Entry>
     </Leaf>
-  )
-}
-
-function LookFirst({ review, cellName }: { review: Review; cellName: (cell: number) => string }) {
-  return (
-    <Entry title="Look at these first" note="By risk: high load, then size, then hand">
-      <Ledger
-        caption="Cells that deserve a look first"
-        head={['Cell', 'Why it is here', 'Before', 'After', 'Change', '±, 95 %', 'Evidence']}
-        numeric={[2, 3, 4, 5, 6]}
-        stack
-      >
-        {review.lookFirst.map((entry) => (
-          <tr key={entry.cell}>
-            <th scope="row">{cellName(entry.cell)}</th>
-            <td className="wide-cell">
-              {entry.why}
-              {entry.note ? <span className="block text-small text-ink-faint">{entry.note}</span> : null}
-            </td>
-            <td className="num">{formatNumber(entry.before, 1)}</td>
-            <td className="num font-semibold">{formatNumber(entry.after, 1)}</td>
-            <td className="num">{formatSigned(entry.changePct, 1)} %</td>
-            <td className="num">
-              {entry.sigmaPct === null ? 'none' : formatNumber((2 * entry.sigmaPct * entry.after) / 100, 1)}
-            </td>
-            <td className="num">{entry.evidenceS === null ? 'none' : `${formatNumber(entry.evidenceS, 1)} s`}</td>
-          </tr>
-        ))}
-      </Ledger>
-    </Entry>
   )
 }

@@ -1,5 +1,6 @@
 /** The place where a revision is submitted, signed or sent back, with the cautions beside the decision. */
 import { useState } from 'react'
+import { checklistKeys, checklistWords, type ChecklistKey } from '../../../shared/cautions.ts'
 import type { Review } from '../../../shared/contract/reviews.ts'
 import type { Revision } from '../../../shared/contract/tables.ts'
 import { formatDateTime } from '../../lib/format.ts'
@@ -92,36 +93,46 @@ function Submit({ revision, moves }: SignOffProps) {
   )
 }
 
+interface ChecklistProps {
+  readonly ticked: readonly ChecklistKey[]
+  readonly onChange: (ticked: readonly ChecklistKey[]) => void
+}
+
+/** The cautions, each ticked on its own; what was ticked is kept with the signature. */
+const Checklist = ({ ticked, onChange }: ChecklistProps) => (
+  <fieldset>
+    <legend className="mb-1 font-semibold">Before you sign</legend>
+    {checklistKeys.map((key) => (
+      <Checkbox
+        key={key}
+        label={checklistWords[key]}
+        checked={ticked.includes(key)}
+        onChange={(event) => onChange(event.target.checked ? [...ticked, key] : ticked.filter((each) => each !== key))}
+      />
+    ))}
+  </fieldset>
+)
+
 function Decide({ revision, review, moves }: SignOffProps) {
   const me = useMe()
   const [name, setName] = useState('')
-  const [looked, setLooked] = useState(false)
-  const [cautions, setCautions] = useState(false)
+  const [ticked, setTicked] = useState<readonly ChecklistKey[]>([])
   const [note, setNote] = useState('')
   const problem = moves.sign.error ?? moves.sendBack.error
-  const ready = looked && cautions && name.trim() === me.person.name
-  const count = review.lookFirst.length
+  const ready = ticked.length === checklistKeys.length && name.trim() === me.person.name && review.intact
   return (
     <div className="mt-6 max-w-(--measure)">
+      {review.intact ? null : (
+        <Banner title="The stored cells do not give the checksum">
+          Somebody has changed the database around the product. Do not sign and do not drive on it.
+        </Banner>
+      )}
       {review.signsOwn ? (
         <p className="mb-4 font-semibold text-copper">
           You prepared this revision yourself. The workshop allows it, and the signature will say “by its author”.
         </p>
       ) : null}
-      <Checkbox
-        label={
-          count === 0
-            ? 'I have looked at the whole table.'
-            : `I have looked at the ${count} changes above and at the whole table.`
-        }
-        checked={looked}
-        onChange={(event) => setLooked(event.target.checked)}
-      />
-      <Checkbox
-        label="I know that a wrong table can destroy an engine or start a fire, that the first pull needs someone listening for knock, and that local law decides what may be driven on the road."
-        checked={cautions}
-        onChange={(event) => setCautions(event.target.checked)}
-      />
+      <Checklist ticked={ticked} onChange={setTicked} />
       <div className="mt-4 grid gap-4">
         <Field
           label="Type your name to sign"
@@ -144,7 +155,9 @@ function Decide({ revision, review, moves }: SignOffProps) {
         <Button
           variant="solid"
           disabled={!ready || !review.may.signOff || moves.sign.isPending}
-          onClick={() => moves.sign.mutate({ name: name.trim(), checksum: revision.checksum, note })}
+          onClick={() =>
+            moves.sign.mutate({ name: name.trim(), checksum: revision.checksum, note, checklist: [...ticked] })
+          }
         >
           Sign revision {revision.number}
         </Button>
@@ -159,7 +172,7 @@ function Decide({ revision, review, moves }: SignOffProps) {
         {review.whyNotSign ??
           (ready
             ? `Signing closes revision ${revision.number} for good.`
-            : 'Tick both lines and type your name to sign; write what should change to send it back.')}
+            : 'Tick every line and type your name to sign; write what should change to send it back.')}
       </p>
     </div>
   )
