@@ -44,6 +44,10 @@ export const router = createBrowserRouter([
           { path: 'logs/:logId', ...page(() => import('./features/logs/log-page.tsx')) },
           { path: 'workbench', ...page(() => import('./features/proposals/workbench-page.tsx')) },
           { path: 'workbench/:proposalId', ...page(() => import('./features/proposals/workbench-page.tsx')) },
+          {
+            path: 'workbench/:proposalId/carry-over',
+            ...page(() => import('./features/proposals/carry-over-page.tsx')),
+          },
           { path: 'revisions', ...page(() => import('./features/reviews/revisions-page.tsx')) },
           { path: 'revisions/compare', ...page(() => import('./features/reviews/compare-page.tsx')) },
           { path: 'revisions/:revisionId', ...page(() => import('./features/reviews/revision-page.tsx')) },

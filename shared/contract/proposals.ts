@@ -229,3 +229,54 @@ export const replayDrive = endpoint({
   }),
   response: Replay,
 })
+
+export const MovedCell = z.object({
+  cell: z.number().int(),
+  rpm: z.number(),
+  mapKpa: z.number(),
+  /** VE in %: in the revision both started from, in the later revision, and as this proposal decided. */
+  base: z.number(),
+  theirs: z.number(),
+  mine: z.number(),
+})
+export type MovedCell = z.infer<typeof MovedCell>
+
+export const Moved = z.object({
+  version: z.number().int(),
+  base: z.object({ id: Id, number: z.number().int() }),
+  /** The newest later revision of the table, or null where nothing has moved. */
+  onto: z.object({ id: Id, number: z.number().int(), author: z.string(), state: z.string() }).nullable(),
+  /** False where the later revision has other axes: then nothing can be carried over, only learned again. */
+  sameAxes: z.boolean(),
+  /** Both changed it, to different values: a person decides each. */
+  contested: z.array(MovedCell),
+  /** Only the later revision changed it, or only this proposal did, or both to the same value. */
+  theirsOnly: z.array(MovedCell),
+  mineOnly: z.array(MovedCell),
+})
+export type Moved = z.infer<typeof Moved>
+
+export const getMoved = endpoint({
+  method: 'GET',
+  path: '/api/proposals/:proposalId/moved',
+  access: 'proposal:read',
+  summary: 'What a later revision has moved under an open proposal, cell by cell',
+  params: ProposalRef,
+  response: Moved,
+})
+export const carryOver = endpoint({
+  method: 'POST',
+  path: '/api/proposals/:proposalId/carry-over',
+  access: 'proposal:edit',
+  summary:
+    'Make a draft from the later revision with the decided cells of this proposal; contested cells are answered one by one',
+  params: ProposalRef,
+  body: z.strictObject({
+    version: z.number().int(),
+    /** The later revision that was looked at; a still later one is told, not overlooked. */
+    ontoId: Id,
+    answers: z.array(z.strictObject({ cell: z.number().int().min(0), take: z.enum(['mine', 'theirs']) })).max(4096),
+    note: z.string().max(500).default(''),
+  }),
+  response: Revision,
+})

@@ -61,6 +61,8 @@ export const Review = z.object({
   /** False when the stored cells no longer give the checksum: then nothing may be signed or driven. */
   intact: z.boolean(),
   comments: z.array(Comment),
+  /** Other revisions made from the same one: what they changed is not in this one. */
+  beside: z.array(z.object({ id: Id, number: z.number().int() })),
   /** Whom a comment can name. */
   mentionable: z.array(Named),
   history: z.array(

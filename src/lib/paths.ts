@@ -21,6 +21,7 @@ export const paths = {
   workbench: (vehicleId: string) => `${vehicle(vehicleId)}/workbench`,
   workbenchStart: (vehicleId: string) => `${vehicle(vehicleId)}/workbench/new`,
   proposal: (vehicleId: string, proposalId: string) => `${vehicle(vehicleId)}/workbench/${proposalId}`,
+  carryOver: (vehicleId: string, proposalId: string) => `${vehicle(vehicleId)}/workbench/${proposalId}/carry-over`,
   revisions: (vehicleId: string) => `${vehicle(vehicleId)}/revisions`,
   revision: (vehicleId: string, revisionId: string) => `${vehicle(vehicleId)}/revisions/${revisionId}`,
   compareRevisions: (vehicleId: string, from: string, to: string) =>

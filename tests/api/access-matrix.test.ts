@@ -126,6 +126,12 @@ describe('from another workshop', () => {
     'POST /api/proposals/:proposalId/decisions': { version: 1, cells: [{ cell: 0, decision: 'kept' }] },
     'POST /api/proposals/:proposalId/revision': { version: 1 },
     'POST /api/proposals/:proposalId/logs': { version: 1, logIds: ['00000000-0000-4000-8000-000000000000'] },
+    'POST /api/proposals/:proposalId/carry-over': {
+      version: 1,
+      ontoId: '00000000-0000-4000-8000-000000000000',
+      answers: [],
+    },
+    'POST /api/revisions/:revisionId/restoration': { note: '' },
     'POST /api/revisions/:revisionId/submission': { note: '' },
     'POST /api/revisions/:revisionId/sign-off': { name: 'x', checksum: 'a'.repeat(64), note: '' },
     'POST /api/revisions/:revisionId/send-back': { note: 'no' },

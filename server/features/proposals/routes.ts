@@ -2,6 +2,7 @@
 import * as contract from '../../../shared/contract/proposals.ts'
 import type { Deps } from '../../deps.ts'
 import { on, type Binder } from '../../platform/http/on.ts'
+import * as carrying from './carry-over.ts'
 import * as inspect from './inspect.ts'
 import * as proposals from './service.ts'
 
@@ -40,4 +41,6 @@ export function mountProposals(binder: Binder, deps: Deps): void {
     binder,
     contract.replayDrive,
   )(({ actor, params, query }) => inspect.replayForProposal(deps, actor, params.proposalId, query))
+  on(binder, contract.getMoved)(({ actor, params }) => carrying.getMoved(deps.db, actor, params.proposalId))
+  on(binder, contract.carryOver)(({ actor, params, body }) => carrying.carryOver(deps, actor, params.proposalId, body))
 }

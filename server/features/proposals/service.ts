@@ -7,7 +7,7 @@ import { fromWire } from '../../../shared/wire.ts'
 import { coreVersion } from '../../core/learn.ts'
 import type { Deps } from '../../deps.ts'
 import { recordAudit } from '../../platform/audit/record.ts'
-import type { Reader } from '../../platform/db/client.ts'
+import type { Reader, Tx } from '../../platform/db/client.ts'
 import { proposalLogs, proposals } from '../../platform/db/schema/proposals.ts'
 import { scopeOf, type Actor, type Scope } from '../../platform/http/actor.ts'
 import { Problem } from '../../platform/http/problem.ts'
@@ -81,7 +81,7 @@ async function toProposal(db: Reader, found: store.ProposalFound): Promise<Propo
   }
 }
 
-async function proposalInScope(db: Reader, scope: Scope, proposalId: string): Promise<store.ProposalFound> {
+export async function proposalInScope(db: Reader, scope: Scope, proposalId: string): Promise<store.ProposalFound> {
   const found = await store.proposalById(db, scope, proposalId)
   if (!found) throw new Problem('not-found')
   return found
@@ -271,7 +271,7 @@ export async function decideCells(
   })
 }
 
-async function openProposal(tx: Reader, actor: Actor, proposalId: string): Promise<store.ProposalFound> {
+export async function openProposal(tx: Reader, actor: Actor, proposalId: string): Promise<store.ProposalFound> {
   const found = await proposalInScope(tx, scopeOf(actor), proposalId)
   if (found.row.state !== 'open')
     throw new Problem('proposal-not-open', { detail: `It is ${found.row.state} at the moment.` })
@@ -296,6 +296,55 @@ export async function cancelProposal(deps: Deps, actor: Actor, proposalId: strin
   })
 }
 
+export interface Revising {
+  readonly version: number
+  readonly note: string
+  /** The whole table of the new revision, and the one it is made from. */
+  readonly values: Float64Array
+  readonly parent: { readonly id: string; readonly values: Float64Array }
+  /** Cells that carry what this proposal decided; the others are the parent's. */
+  readonly own: (cell: number) => boolean
+  readonly settings: Record<string, unknown>
+}
+
+/** Appends the draft and closes the proposal on the version that was seen. @throws Problem nothing-accepted, changed-meanwhile */
+export async function reviseFrom(
+  tx: Tx,
+  actor: Actor,
+  row: store.ProposalRow,
+  surface: Surface,
+  { version, note, values, parent, own, settings }: Revising,
+): Promise<Revision> {
+  const cellsChanged = values.reduce((sum, value, cell) => sum + (value === parent.values[cell] ? 0 : 1), 0)
+  if (cellsChanged === 0) throw new Problem('nothing-accepted')
+  const held = new Set(surface.held.map(({ cell }) => cell))
+  const revision = await appendRevision(tx, actor, {
+    vehicleId: row.vehicleId,
+    kind: 've',
+    grid: surface.grid,
+    values,
+    parentId: parent.id,
+    cellsChanged,
+    origin: 'proposal',
+    note,
+    proposalId: row.id,
+    logs: (await store.logsOf(tx, row.id)).filter((log) => log.used),
+    settings,
+    coreVersion: row.coreVersion,
+    provenance: {
+      decision: row.decisions.map((decision, cell) =>
+        own(cell) ? (decision === 'open' && held.has(cell) ? 'held' : decision) : 'none',
+      ),
+      evidenceS: surface.evidenceS,
+      sigmaPct: surface.sigmaPct,
+    },
+  })
+  const closed = await store.updateVersion(tx, row.id, version, { state: 'revised', revisionId: revision.id })
+  if (!closed) throw new Problem('changed-meanwhile', { detail: decidedMeanwhile })
+  await tx.update(proposals).set({ step: '' }).where(eq(proposals.id, row.id))
+  return getRevision(tx, scopeOf(actor), revision.id)
+}
+
 /** Accepted, hand-set and pinned cells make a draft; open and held cells keep their value. */
 export async function makeRevision(
   deps: Deps,
@@ -305,38 +354,14 @@ export async function makeRevision(
 ): Promise<Revision> {
   return deps.db.transaction(async (tx) => {
     const { row } = await openProposal(tx, actor, proposalId)
-    const { surface, decisions } = row
+    const { surface } = row
     if (!surface) throw new Problem('proposal-not-open')
-    const current = fromWire(surface.current)
-    const values = takenTable(row, surface)
-    const cellsChanged = values.reduce((sum, value, cell) => sum + (value === current[cell] ? 0 : 1), 0)
-    if (cellsChanged === 0) throw new Problem('nothing-accepted')
-    const held = new Set(surface.held.map(({ cell }) => cell))
-    const revision = await appendRevision(tx, actor, {
-      vehicleId: row.vehicleId,
-      kind: 've',
-      grid: surface.grid,
-      values,
-      parentId: row.baseRevisionId,
-      cellsChanged,
-      origin: 'proposal',
-      note: input.note,
-      proposalId,
-      logs: (await store.logsOf(tx, proposalId)).filter((log) => log.used),
+    return reviseFrom(tx, actor, row, surface, {
+      ...input,
+      values: takenTable(row, surface),
+      parent: { id: row.baseRevisionId, values: fromWire(surface.current) },
+      own: () => true,
       settings: row.settings,
-      coreVersion: row.coreVersion,
-      provenance: {
-        decision: decisions.map((decision, cell) => (decision === 'open' && held.has(cell) ? 'held' : decision)),
-        evidenceS: surface.evidenceS,
-        sigmaPct: surface.sigmaPct,
-      },
     })
-    const closed = await store.updateVersion(tx, proposalId, input.version, {
-      state: 'revised',
-      revisionId: revision.id,
-    })
-    if (!closed) throw new Problem('changed-meanwhile', { detail: decidedMeanwhile })
-    await tx.update(proposals).set({ step: '' }).where(eq(proposals.id, proposalId))
-    return getRevision(tx, scopeOf(actor), revision.id)
   })
 }

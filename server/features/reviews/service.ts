@@ -12,7 +12,7 @@ import { scopeOf, type Actor } from '../../platform/http/actor.ts'
 import { Problem } from '../../platform/http/problem.ts'
 import { peopleWithRole, workshopSettings } from '../accounts/service.ts'
 import { tell, type Fact } from '../notices/service.ts'
-import { getRevision, isIntact, moveRevision } from '../tables/service.ts'
+import { getRevision, isIntact, linesOf, moveRevision } from '../tables/service.ts'
 import { ownersOf, vehicleInScope } from '../vehicles/service.ts'
 import { mentionable, toComment } from './comments.ts'
 import { reviewAsked, wasSentBack, wasSigned, type RevisionFacts } from './facts.ts'
@@ -43,6 +43,15 @@ async function historyOf(db: Reader, revisionId: string): Promise<Review['histor
   }))
 }
 
+async function besideOf(db: Reader, actor: Actor, { id, parentId, vehicleId, kind }: Revision) {
+  if (parentId === null) return []
+  const lines = await linesOf(db, scopeOf(actor), vehicleId, kind)
+  return lines
+    .filter((line) => line.parentId === parentId && line.id !== id)
+    .map((line) => ({ id: line.id, number: line.number }))
+    .sort((a, b) => a.number - b.number)
+}
+
 export async function getReview(deps: Deps, actor: Actor, revisionId: string): Promise<Review> {
   const { db } = deps
   const revision = await getRevision(db, scopeOf(actor), revisionId)
@@ -56,6 +65,7 @@ export async function getReview(deps: Deps, actor: Actor, revisionId: string): P
     summary: changeSummary(revision),
     intact: isIntact(revision),
     comments: (await store.commentsOf(db, revisionId)).map((found) => toComment(found, people)),
+    beside: await besideOf(db, actor, revision),
     mentionable: people,
     history: await historyOf(db, revisionId),
     may: {

@@ -100,6 +100,10 @@ export const isIntact = ({ grid, values, checksum }: Revision): boolean =>
 export const holdState = (tx: Tx, revisionId: string) =>
   tx.select({ id: revisions.id }).from(revisions).where(eq(revisions.id, revisionId)).for('share')
 
+/** The history of one kind of table, newest first. */
+export const linesOf = async (db: Reader, scope: Scope, vehicleId: string, kind?: store.TableKind) =>
+  (await store.revisionsOf(db, scope, vehicleId, kind)).map(toLine)
+
 export async function listRevisions(
   deps: Deps,
   actor: Actor,
@@ -108,7 +112,7 @@ export async function listRevisions(
 ): Promise<RevisionLine[]> {
   const scope = scopeOf(actor)
   await vehicleInScope(deps.db, scope, vehicleId)
-  return (await store.revisionsOf(deps.db, scope, vehicleId, kind)).map(toLine)
+  return linesOf(deps.db, scope, vehicleId, kind)
 }
 
 /** Tables of the vehicle, newest first, with their cells: for comparing a read-back. */

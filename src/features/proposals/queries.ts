@@ -2,8 +2,10 @@
 import { queryOptions, useMutation, useQueryClient } from '@tanstack/react-query'
 import {
   cancelProposal,
+  carryOver,
   chooseLogs,
   decideCells,
+  getMoved,
   getProposal,
   listProposals,
   makeRevision,
@@ -27,6 +29,11 @@ export const proposalQueries = {
       queryKey: [...proposalQueries.all(), 'detail', proposalId],
       queryFn: ({ signal }) => call(getProposal, { params: { proposalId }, signal }),
       refetchInterval: (query) => (running(query.state.data?.state) ? 700 : false),
+    }),
+  moved: (proposalId: string) =>
+    queryOptions({
+      queryKey: [...proposalQueries.all(), 'moved', proposalId],
+      queryFn: ({ signal }) => call(getMoved, { params: { proposalId }, signal }),
     }),
 }
 
@@ -81,5 +88,22 @@ export function useMakeRevision(proposalId: string) {
   return useMutation({
     mutationFn: (body: { version: number; note: string }) => call(makeRevision, { params: { proposalId }, body }),
     onSuccess: () => client.invalidateQueries(),
+  })
+}
+
+export interface CarryOverInput {
+  readonly version: number
+  readonly ontoId: string
+  readonly answers: { cell: number; take: 'mine' | 'theirs' }[]
+  readonly note: string
+}
+
+export function useCarryOver(proposalId: string) {
+  const client = useQueryClient()
+  return useMutation({
+    mutationFn: (body: CarryOverInput) => call(carryOver, { params: { proposalId }, body }),
+    onSuccess: () => client.invalidateQueries(),
+    // Refused because something moved again: what moved is shown before anything more is sent.
+    onError: () => client.invalidateQueries({ queryKey: proposalQueries.moved(proposalId).queryKey }),
   })
 }

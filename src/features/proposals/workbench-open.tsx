@@ -6,7 +6,7 @@ import { formatNumber, formatSigned } from '../../lib/format.ts'
 import { paths } from '../../lib/paths.ts'
 import { useCan } from '../../lib/session.ts'
 import { Banner } from '../../ui/banner.tsx'
-import { Button, ButtonLink } from '../../ui/button.tsx'
+import { Button, ButtonLink, TextLink } from '../../ui/button.tsx'
 import { cellsOf, Heatmap, type HeatmapMark, type Selection } from '../../ui/heatmap/heatmap.tsx'
 import { Legend } from '../../ui/heatmap/legend.tsx'
 import { Note } from '../../ui/note.tsx'
@@ -130,7 +130,8 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
       {proposal.overtakenBy ? (
         <Banner title={`Revision ${proposal.overtakenBy.number} has been made since`}>
           This proposal started from revision {proposal.base.number}. What you make here does not contain the later
-          changes.
+          changes.{' '}
+          <TextLink to={paths.carryOver(vehicleId, proposal.id)}>See what has moved and carry it over</TextLink>
         </Banner>
       ) : null}
       {decisions.problem ? <Banner title={decisions.problem.message}>The page shows what is stored.</Banner> : null}

@@ -10,6 +10,7 @@ import { paths } from '../../lib/paths.ts'
 import { usePageTitle } from '../../lib/page-title.ts'
 import { useCan, useMe } from '../../lib/session.ts'
 import { Banner } from '../../ui/banner.tsx'
+import { TextLink } from '../../ui/button.tsx'
 import { Entry, Leaf, PageHead } from '../../ui/leaf.tsx'
 import { Facts } from '../../ui/facts.tsx'
 import { Loading } from '../../ui/loading.tsx'
@@ -120,6 +121,7 @@ function RevisionView({ vehicleId, revision, review }: { vehicleId: string; revi
             ...(revision.note ? [{ label: 'Note', value: `“${revision.note}”` }] : []),
           ]}
         />
+        {review.beside.length > 0 ? <Beside revision={revision} beside={review.beside} vehicleId={vehicleId} /> : null}
         {revision.proposalId && mayEdit ? (
           <p className="mt-3">
             <Link
@@ -189,3 +191,32 @@ function RevisionView({ vehicleId, revision, review }: { vehicleId: string; revi
     </Leaf>
   )
 }
+
+/** Where the history branches, a reviewer is told what this revision does not contain. */
+const Beside = ({
+  revision,
+  beside,
+  vehicleId,
+}: {
+  revision: Revision
+  beside: Review['beside']
+  vehicleId: string
+}) => (
+  <div className="mt-4 max-w-(--measure)">
+    <Note icon="reason" head="The history branches here">
+      <p>
+        From the same revision {beside.length === 1 ? 'one other was made' : `${beside.length} others were made`}. What
+        they changed is not in this one:
+      </p>
+      <ul className="flex flex-wrap gap-x-4">
+        {beside.map((each) => (
+          <li key={each.id}>
+            <TextLink to={paths.compareRevisions(vehicleId, each.id, revision.id)}>
+              compare with revision {each.number}
+            </TextLink>
+          </li>
+        ))}
+      </ul>
+    </Note>
+  </div>
+)

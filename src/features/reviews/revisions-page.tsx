@@ -128,7 +128,7 @@ function History({ vehicleId, kind, lines, onTurn }: HistoryProps) {
       aside={
         <>
           <Note icon="info" head="The small pictures">
-            <p>Each square is a cell: brown where VE went up, blue where it went down, paper where it stayed.</p>
+            <p>Each square is a cell: brown where the value went up, blue where it went down, paper where it stayed.</p>
           </Note>
           <Note icon="info" head="Checking what is in the controller">
             <p>Read the table back from the controller and drop it in: the page says which revision it is.</p>
@@ -202,7 +202,7 @@ function HistoryLine({ line, entry, vehicleId, chosen, onChoose }: HistoryLinePr
   const origin = entry?.parentNumber ? `from revision ${entry.parentNumber}` : ''
   return (
     <tr>
-      <td className="min-w-12">
+      <td className="min-w-12 !align-top">
         {entry?.changePct ? <ChangePatch changePct={entry.changePct} cols={entry.cols} /> : null}
       </td>
       <th scope="row">

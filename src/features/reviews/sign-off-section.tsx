@@ -48,7 +48,7 @@ export function SignOffSection({ revision, review, moves }: SignOffProps) {
       ) : null}
       {review.may.submit ? <Submit {...{ revision, review, moves }} /> : null}
       {review.may.signOff || review.may.sendBack ? <Decide {...{ revision, review, moves }} /> : null}
-      {revision.state === 'submitted' && !review.may.signOff && review.whyNotSign ? (
+      {revision.state === 'submitted' && !review.may.signOff && !review.may.sendBack && review.whyNotSign ? (
         <p className="mt-4 text-ink-quiet">{review.whyNotSign}</p>
       ) : null}
       {review.may.withdraw ? (
