@@ -79,10 +79,10 @@ function Head({ me, below }: { me: Me; below?: (folded: boolean) => ReactNode })
       <a href="#content" className="sr-only focus:not-sr-only">
         Skip to the content
       </a>
-      <div className="flex min-h-14 flex-wrap items-center gap-x-8 px-(--leaf-gutter)">
+      <div className="flex min-h-14 flex-wrap items-center gap-x-8 px-(--leaf-gutter) phone:gap-x-3">
         <Brand />
         <Places places={places} label={me.workshop.name} folded={folded} />
-        <div className="ml-auto flex items-center gap-6">
+        <div className="ml-auto flex items-center gap-6 phone:gap-4">
           <span className="text-ink-quiet phone:hidden">{me.workshop.name}</span>
           {me.demo ? (
             <Link to={paths.mails()} className="text-ink-quiet hover:text-ink phone:hidden">

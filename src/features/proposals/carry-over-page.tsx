@@ -45,7 +45,7 @@ export default function CarryOverPage() {
         title={movedSentence(moved.data)}
         lead={
           onto
-            ? `Both started from revision ${moved.data.base.number}. ${onto.author} made revision ${onto.number} meanwhile; it ${onto.state === 'signed' ? 'is signed' : 'is not signed'}.`
+            ? `This proposal starts from revision ${moved.data.base.number}. Revision ${onto.number} is later, by ${onto.author}, ${onto.state === 'signed' ? 'signed' : 'not signed'}.`
             : `It still stands on revision ${moved.data.base.number}, the newest there is.`
         }
       />
@@ -144,7 +144,7 @@ interface ContestedProps {
 
 function ContestedCells({ cells, ontoNumber, answers, onAnswer }: ContestedProps) {
   const choice = (cell: MovedCell, take: Take, words: string) => (
-    <label className="flex min-h-6 items-center gap-2">
+    <label className="flex min-h-6 items-baseline gap-2">
       <input
         type="radio"
         className="size-4 accent-copper"

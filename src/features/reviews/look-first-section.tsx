@@ -71,9 +71,13 @@ export function LookFirstSection({ lookFirst, kind, cellName, onSelect }: LookFi
               {entry.note ? <span className="block text-small text-ink-faint">{entry.note}</span> : null}
             </td>
             <td className="num">{formatNumber(entry.before, digits)}</td>
-            <td className="num font-semibold">{formatNumber(entry.after, digits)}</td>
+            <td className="num font-semibold">
+              <span className="hidden font-normal phone:inline">to </span>
+              {formatNumber(entry.after, digits)}
+            </td>
             <td className="num">{formatSigned(entry.changePct, 1)} %</td>
             <td className="num">
+              <span className="hidden phone:inline">±</span>
               {entry.sigmaPct === null ? 'none' : formatNumber((2 * entry.sigmaPct * entry.after) / 100, digits)}
             </td>
             <td className="num">{entry.evidenceS === null ? 'none' : `${formatNumber(entry.evidenceS, 1)} s`}</td>
