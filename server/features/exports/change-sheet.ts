@@ -129,7 +129,7 @@ function drawSignatures(pages: SheetPages, revision: Revision): void {
   const lines = [
     [author.name, `Prepared, ${instantWords(revision.createdAt)}`],
     valid
-      ? [valid.by.name, `${valid.byAuthor ? 'Signed by its author' : 'Reviewed and signed'}, ${instantWords(valid.at)}`]
+      ? [valid.by.name, `${valid.byAuthor ? 'Signed by its author' : 'Reviewed'}, ${instantWords(valid.at)}`]
       : ['', 'Reviewed: not signed'],
     ['', 'Entered in the engine by, date'],
   ] as const

@@ -1,6 +1,8 @@
 /** The paper a change sheet is drawn on: pages with head and foot, a cursor, text in the right font, the draft mark. */
+import { readFileSync } from 'node:fs'
 import { createRequire } from 'node:module'
 import PDFDocument from 'pdfkit'
+import { fontInWoff } from './woff.ts'
 
 export const ink = '#2a1f18'
 export const quiet = '#55473d'
@@ -17,6 +19,19 @@ const files = createRequire(import.meta.url)
 const subsets = ['latin', 'latin-ext', 'greek', 'cyrillic', 'vietnamese'] as const
 type Subset = (typeof subsets)[number]
 type Weight = 400 | 600
+
+const fonts = new Map<string, Buffer>()
+
+/** Read and unpacked when a process first prints. */
+function fontOf(subset: Subset, weight: Weight): Buffer {
+  const name = `${subset}-${weight}`
+  const known = fonts.get(name)
+  if (known) return known
+  const file = files.resolve(`@fontsource/source-sans-3/files/source-sans-3-${name}-normal.woff`)
+  const font = fontInWoff(readFileSync(file))
+  fonts.set(name, font)
+  return font
+}
 
 /** The font comes in pieces by script; names and notes may need several. */
 function subsetOf(code: number): Subset | null {
@@ -81,8 +96,7 @@ export class SheetPages {
     })
     for (const subset of subsets) {
       for (const weight of [400, 600] as const) {
-        const file = `@fontsource/source-sans-3/files/source-sans-3-${subset}-${weight}-normal.woff`
-        this.doc.registerFont(`${subset}-${weight}`, files.resolve(file))
+        this.doc.registerFont(`${subset}-${weight}`, fontOf(subset, weight))
       }
     }
     this.doc.fillColor(ink)

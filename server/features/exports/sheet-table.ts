@@ -100,7 +100,9 @@ export function drawValues(pages: SheetPages, revision: Revision): void {
       colour: known || change !== null ? ink : quiet,
       align: 'right',
     })
-    const decision = decisionWord[provenance?.decision[cell] ?? ''] ?? ''
+    // Without evidence a cell is kept by itself: the hatching says so.
+    const decided = provenance?.decision[cell] ?? ''
+    const decision = known || decided !== 'kept' ? (decisionWord[decided] ?? '') : ''
     const under = change === null ? decision : signed(change, 1)
     pages.line(under, right, y + 15, { size: 7, colour: quiet, align: 'right' })
   })
