@@ -80,8 +80,9 @@ test('A tuner uploads a log, accepts cells, a reviewer signs, the owner sees it,
 
   const reviewer = await signedIn(browser, 'reviewer')
   await reviewer.page.goto(address)
-  for (const caution of await reviewer.page.getByRole('group', { name: 'Before you sign' }).getByRole('checkbox').all())
-    await caution.check()
+  const cautions = reviewer.page.getByRole('group', { name: 'Before you sign' })
+  await expect(cautions).toBeVisible()
+  for (const caution of await cautions.getByRole('checkbox').all()) await caution.check()
   await expect(reviewer.page.getByRole('button', { name: 'Sign revision 2' })).toBeDisabled()
   await reviewer.page.getByLabel('Type your name to sign').fill(personOf('reviewer').name)
   await holdsUp(reviewer.page)
