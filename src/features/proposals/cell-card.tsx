@@ -4,11 +4,12 @@ import { useState } from 'react'
 import { formatNumber, formatSigned } from '../../lib/format.ts'
 import { Button } from '../../ui/button.tsx'
 import { Facts } from '../../ui/facts.tsx'
+import { readNumber } from '../../ui/heatmap/clipboard.ts'
 import { Status } from '../../ui/status.tsx'
 import {
   cellState,
   changePct,
-  readNumber,
+  decideAll,
   takenValue,
   type CellChange,
   type CellState,
@@ -47,7 +48,7 @@ export function CellCard({ decided, cell, cells, mayDecide, handInput, onDecide 
   const change = changePct(current, shown)
   const sigma = surface.sigmaPct[cell]
   const held = surface.held.find((entry) => entry.cell === cell)
-  const decide = (decision: CellChange['decision']) => onDecide(cells.map((each) => ({ cell: each, decision })))
+  const decide = (decision: Exclude<CellChange['decision'], 'by-hand'>) => onDecide(decideAll(decided, cells, decision))
   return (
     <aside aria-label={`Cell ${rpm} rpm, ${mapKpa} kPa`} aria-live="polite">
       <div className="flex items-baseline justify-between">
@@ -127,7 +128,7 @@ interface DecisionButtonsProps {
   readonly state: CellState
   readonly current: number
   readonly shown: number
-  readonly decide: (decision: CellChange['decision']) => void
+  readonly decide: (decision: Exclude<CellChange['decision'], 'by-hand'>) => void
   readonly handInput: CellCardProps['handInput']
   readonly onDecide: CellCardProps['onDecide']
 }

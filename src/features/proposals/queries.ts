@@ -42,17 +42,23 @@ export function useRequestProposal(vehicleId: string) {
 /** Sends decisions with the version they were made on; the answer replaces the proposal on the page. */
 export function useDecideCells(proposalId: string) {
   const client = useQueryClient()
-  return useMutation({
+  const detail = proposalQueries.detail(proposalId)
+  const mutation = useMutation({
     mutationFn: (body: {
       version: number
       cells: { cell: number; decision: Proposal['decisions'][number]; value?: number }[]
     }) => call(decideCells, { params: { proposalId }, body }),
     onSuccess: (proposal) => {
-      client.setQueryData(proposalQueries.detail(proposalId).queryKey, proposal)
+      client.setQueryData(detail.queryKey, proposal)
     },
     // Refused because somebody else decided meanwhile: their decisions are fetched before anything more is sent.
-    onError: () => client.invalidateQueries({ queryKey: proposalQueries.detail(proposalId).queryKey }),
+    onError: () => client.invalidateQueries({ queryKey: detail.queryKey }),
   })
+  return {
+    decide: mutation.mutateAsync,
+    error: mutation.error,
+    fetchAgain: () => client.fetchQuery({ ...detail, staleTime: 0 }),
+  }
 }
 
 /** Switches logs on or off; the answer is the proposal with its new surface. */
