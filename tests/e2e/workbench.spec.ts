@@ -123,3 +123,32 @@ test('Two people decide at once: the later one is told, keeps what was decided, 
   await expect(second.page.getByText('Saved')).toBeVisible()
   await second.page.keyboard.press('Control+z')
 })
+
+test('The cell card shows who spoke and leads to the trace; a replay follows the decisions', async ({ browser }) => {
+  const { page, faults } = await signedIn(browser, 'tuner')
+  await openWorkbench(page)
+  await page.getByRole('gridcell', { name: /2000 rpm, 60 kPa/ }).click()
+  const card = page.getByRole('complementary', { name: 'Cell 2000 rpm, 60 kPa' })
+  await expect(
+    card.getByRole('list', { name: 'Logs that spoke for this cell' }).getByRole('listitem').first(),
+  ).toHaveText(/Log \d+.* s, \d+ %/)
+  await page.getByRole('button', { name: 'Show the samples behind it' }).click()
+  await expect(card.getByRole('img', { name: /Lambda error, Over position, rpm: \d+ readings/ })).toBeVisible()
+  await page.getByRole('button', { name: 'Show what it would have read' }).click()
+  const figure = page.getByText(/Within 3 % of the target over the whole drive/)
+  await expect(figure).toBeVisible()
+  const before = await figure.textContent()
+  await holdsUp(page)
+  await page.getByRole('button', { name: 'Decide by rule' }).click()
+  await page.getByRole('button', { name: /^Accept \d+ cells$/ }).click()
+  await expect(figure).not.toHaveText(before!)
+  await page.getByRole('button', { name: 'Undo' }).click()
+  await expect(figure).toHaveText(before!)
+  await page.getByRole('button', { name: 'Put it away' }).click()
+  await card
+    .getByRole('link', { name: /Log \d+, \d+:\d\d/ })
+    .first()
+    .click()
+  await expect(page.getByRole('button', { name: 'Whole drive' })).toBeEnabled()
+  expect(faults).toEqual([])
+})

@@ -17,6 +17,8 @@ export interface Decided {
   readonly surface: Surface
   readonly decisions: readonly CellDecision[]
   readonly byHand: readonly (number | null)[]
+  /** Days since the last drive that spoke for each cell. */
+  readonly ages?: readonly (number | null)[]
 }
 
 const heldCells = new WeakMap<Surface, ReadonlySet<number>>()
@@ -117,20 +119,34 @@ export function cellsByRule(decided: Decided, rule: Rule): number[] {
   return cells
 }
 
-/** One decision for many cells: accepting leaves out cells without evidence, pinning holds what the cell has by hand. */
+/**
+ * One decision for many cells. Accepting leaves out cells without evidence, accepting and keeping leave out pinned
+ * ones, pinning holds what the cell has by hand.
+ */
 export function decideAll(
-  { surface, byHand }: Decided,
+  { surface, decisions, byHand }: Decided,
   cells: readonly number[],
   decision: Exclude<CellDecision, 'by-hand'>,
 ): CellChange[] {
-  if (decision === 'accepted') {
-    return cells.filter((cell) => hasEvidence(surface, cell)).map((cell) => ({ cell, decision }))
+  if (decision === 'accepted' || decision === 'kept') {
+    return cells
+      .filter((cell) => decisions[cell] !== 'pinned' && (decision === 'kept' || hasEvidence(surface, cell)))
+      .map((cell) => ({ cell, decision }))
   }
   return cells.map((cell) => {
     const value = decision === 'pinned' ? (byHand[cell] ?? null) : null
     return value === null ? { cell, decision } : { cell, decision, value }
   })
 }
+
+/** Values by hand; a pinned cell does not move until its pin is taken off. */
+export const setByHand = (
+  { decisions }: Decided,
+  cells: readonly { readonly cell: number; readonly value: number }[],
+): CellChange[] =>
+  cells
+    .filter(({ cell }) => decisions[cell] !== 'pinned')
+    .map(({ cell, value }) => ({ cell, decision: 'by-hand', value }))
 
 /** The changes that put the cells back to what they are now. */
 export function inverseOf(decided: Decided, changes: readonly CellChange[]): CellChange[] {
@@ -149,7 +165,7 @@ export function applyChanges(decided: Decided, changes: readonly CellChange[]): 
     decisions[cell] = decision
     byHand[cell] = value ?? null
   }
-  return { surface: decided.surface, decisions, byHand }
+  return { ...decided, decisions, byHand }
 }
 
 /** True where every cell already stands as the changes would leave it. */

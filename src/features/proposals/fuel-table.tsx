@@ -5,9 +5,9 @@ import { formatNumber, formatSigned } from '../../lib/format.ts'
 import { Heatmap, type HeatmapMark, type Selection } from '../../ui/heatmap/heatmap.tsx'
 import { Legend } from '../../ui/heatmap/legend.tsx'
 import { TableEditor } from '../../ui/heatmap/table-editor.tsx'
-import { cellState, hasEvidence, type CellChange, type Decided } from './decisions.ts'
+import { cellState, hasEvidence, setByHand, type CellChange, type Decided } from './decisions.ts'
 import { ViewChoice } from './view-choice.tsx'
-import { viewName, views, viewScale, viewUnit, viewValue, type View } from './views.ts'
+import { viewDigits, viewName, views, viewScale, viewUnit, viewValue, type View } from './views.ts'
 
 interface FuelTableProps {
   readonly decided: Decided
@@ -40,7 +40,7 @@ function shown(decided: Decided, view: View) {
     grid: surface.grid,
     values: surface.current.map((_, cell) => viewValue(decided, view, cell)),
     view: viewScale[view],
-    format: (value: number) => (isSigned(view) ? formatSigned(value, 1) : formatNumber(value, 1)),
+    format: (value: number) => (isSigned(view) ? formatSigned : formatNumber)(value, viewDigits[view]),
     none: (cell: number) => !hasEvidence(surface, cell) && cellState(decided, cell) === 'none',
     mark: (cell: number) => markOf(decided, cell),
     evidenceS: surface.evidenceS,
@@ -69,7 +69,7 @@ export function FuelTable(props: FuelTableProps) {
         filling={{ name: 'the proposal', values: surface.proposed }}
         pasteRefusal={view === 'proposed' ? null : 'Show Proposed first: what is pasted becomes the VE of the cells.'}
         onType={() => onView('proposed')}
-        onEdit={(cells) => onDecide(cells.map(({ cell, value }) => ({ cell, decision: 'by-hand', value })))}
+        onEdit={(cells) => onDecide(setByHand(decided, cells))}
         onUndo={props.onUndo}
         onRedo={props.onRedo}
         selection={selection}
@@ -126,5 +126,5 @@ function labelOf(decided: Decided, view: View, cell: number): string {
     state === 'none'
       ? 'no evidence'
       : `${formatNumber(surface.evidenceS[cell] ?? 0, 1)} seconds of evidence, ${state.replace('-', ' ')}`
-  return `${surface.grid.rpm[cell % cols]} rpm, ${surface.grid.mapKpa[Math.floor(cell / cols)]} kPa: ${value === null ? 'none' : formatNumber(value, 1)}, ${words}`
+  return `${surface.grid.rpm[cell % cols]} rpm, ${surface.grid.mapKpa[Math.floor(cell / cols)]} kPa: ${value === null ? 'none' : formatNumber(value, viewDigits[view])}, ${words}`
 }

@@ -1,12 +1,14 @@
 /** Server state of proposals: what is read, how long it is fresh, and the changes. */
-import { queryOptions, useMutation, useQueryClient } from '@tanstack/react-query'
+import { keepPreviousData, queryOptions, useMutation, useQueryClient } from '@tanstack/react-query'
 import {
   cancelProposal,
   chooseLogs,
   decideCells,
+  getCellSamples,
   getProposal,
   listProposals,
   makeRevision,
+  replayDrive,
   requestProposal,
   type Proposal,
 } from '../../../shared/contract/proposals.ts'
@@ -14,6 +16,8 @@ import type { ProposalState } from '../../../shared/lifecycle.ts'
 import { call } from '../../lib/api.ts'
 
 const running = (state: ProposalState | undefined): boolean => state === 'queued' || state === 'learning'
+
+const usedOf = (logs: Proposal['logs']) => logs.filter(({ used }) => used).map(({ id }) => id)
 
 export const proposalQueries = {
   all: () => ['proposals'] as const,
@@ -27,6 +31,21 @@ export const proposalQueries = {
       queryKey: [...proposalQueries.all(), 'detail', proposalId],
       queryFn: ({ signal }) => call(getProposal, { params: { proposalId }, signal }),
       refetchInterval: (query) => (running(query.state.data?.state) ? 700 : false),
+    }),
+  /** The readings behind a cell change with the logs in use, not with the decisions. */
+  samples: ({ id, logs }: Proposal, cell: number) =>
+    queryOptions({
+      queryKey: [...proposalQueries.all(), 'samples', id, usedOf(logs), cell],
+      queryFn: ({ signal }) => call(getCellSamples, { params: { proposalId: id, cell }, signal }),
+      staleTime: Infinity,
+    }),
+  /** A drive with the table as decided: every version of the proposal gives another one. */
+  replay: ({ id, version }: Proposal, query: { logId: string; fromS: number; toS: number }) =>
+    queryOptions({
+      queryKey: [...proposalQueries.all(), 'replay', id, version, query],
+      queryFn: ({ signal }) => call(replayDrive, { params: { proposalId: id }, query, signal }),
+      placeholderData: keepPreviousData,
+      staleTime: Infinity,
     }),
 }
 

@@ -2,11 +2,12 @@
  * Decisions as the page makes them: shown at once, sent with the version they were made on, undone without limit.
  * What the server has not confirmed lies on this device as well, and is sent when the page is opened again.
  */
-import { useEffect, useRef, useState } from 'react'
+import { useEffect, useMemo, useRef, useState } from 'react'
 import type { Proposal } from '../../../shared/contract/proposals.ts'
 import { ApiProblem } from '../../lib/api.ts'
 import { useMe } from '../../lib/session.ts'
 import { applyChanges, holds, inverseOf, type CellChange, type Decided, type Surface } from './decisions.ts'
+import { agesOf } from './evidence.ts'
 import { readPending, writePending } from './pending.ts'
 import { useDecideCells } from './queries.ts'
 
@@ -53,7 +54,9 @@ export function useDecisions(proposal: Proposal & { surface: Surface }): Decisio
   const isSending = useRef(false)
   const { decide, fetchAgain, error } = useDecideCells(proposal.id)
 
-  const stored: Decided = { surface: proposal.surface, decisions: proposal.decisions, byHand: proposal.byHand }
+  const { surface, logs } = proposal
+  const ages = useMemo(() => agesOf(surface, logs, new Date()), [surface, logs])
+  const stored: Decided = { surface, decisions: proposal.decisions, byHand: proposal.byHand, ages }
   const decided = queue.reduce(applyChanges, stored)
 
   const keep = (steps: readonly (readonly CellChange[])[]) => {

@@ -24,6 +24,7 @@ import { views } from './views.ts'
 
 /** Charts are fetched when the table already stands. */
 const Profile = lazy(() => import('./profile.tsx'))
+const ReplayPanel = lazy(() => import('./replay-panel.tsx'))
 
 interface WorkbenchOpenProps {
   readonly proposal: Proposal & { surface: Surface }
@@ -66,6 +67,7 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
     const cell = firstOpen(decided)
     return { anchor: cell, focus: cell }
   })
+  const [replay, setReplay] = useRemembered('workbench-replay', ['closed', 'open'] as const)
   const [panel, setPanel] = useState<'rule' | 'revision' | null>(null)
   const [preview, setPreview] = useState<ReadonlySet<number>>(new Set())
   const [handOpen, setHandOpen] = useState(false)
@@ -87,7 +89,7 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
     const key = event.key.toLowerCase()
     const decision = ({ a: 'accepted', k: 'kept', p: 'pinned' } as const)[key]
     if (decision) decisions.decide(decideAll(decided, cells, decision))
-    if (key === 'h') {
+    if (key === 'h' && cells.some((cell) => decided.decisions[cell] !== 'pinned')) {
       event.preventDefault()
       setHandOpen(true)
     }
@@ -203,10 +205,28 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
               <Profile decided={decided} cell={selection.focus} />
             </Suspense>
           ) : null}
+          <section aria-label="Replay" className="mt-7 border-t border-ink pt-3.5">
+            <div className="mb-3 flex flex-wrap items-baseline gap-x-4">
+              <h2 className="font-semibold">Replay a drive</h2>
+              <Button
+                variant="word"
+                aria-expanded={replay === 'open'}
+                onClick={() => setReplay(replay === 'open' ? 'closed' : 'open')}
+              >
+                {replay === 'open' ? 'Put it away' : 'Show what it would have read'}
+              </Button>
+            </div>
+            {replay === 'open' ? (
+              <Suspense fallback={null}>
+                <ReplayPanel proposal={proposal} />
+              </Suspense>
+            ) : null}
+          </section>
         </section>
         <div className="laptop:col-start-2 laptop:row-span-2 laptop:row-start-1 desk:col-start-3">
           {selection ? (
             <CellCard
+              proposal={proposal}
               decided={decided}
               cell={selection.focus}
               cells={cells}
