@@ -9,7 +9,7 @@ import {
   XYChart,
   buildChartTheme,
 } from '@visx/xychart'
-import { useEffect, useRef, useState } from 'react'
+import { memo, useEffect, useRef, useState } from 'react'
 import { formatNumber } from '../../lib/format.ts'
 import type { Decided } from './decisions.ts'
 import { profileOf, type Cut, type ProfilePoint } from './profile-points.ts'
@@ -37,7 +37,9 @@ function useWidth() {
   return { box, width }
 }
 
-export default function Profile({ decided, cell }: { decided: Decided; cell: number }) {
+export default memo(Profile)
+
+function Profile({ decided, cell }: { decided: Decided; cell: number }) {
   return (
     <section aria-label="Profile through the cell" className="mt-7">
       <h2 className="font-semibold">Through the cell</h2>

@@ -1,5 +1,6 @@
 /** What the decisions come to in the engine: mean change at idle, cruise and load, and what the injectors must give. */
 import { useQuery } from '@tanstack/react-query'
+import { memo } from 'react'
 import { valueAt, type Grid } from '../../../shared/grid.ts'
 import { formatNumber, formatSigned } from '../../lib/format.ts'
 import { tableQueries } from '../tables/queries.ts'
@@ -10,7 +11,7 @@ import { idleKpa, idleRpm, regionChanges } from './regions.ts'
 
 const words = { idle: 'Idle', cruise: 'Cruise', load: 'Load' } as const
 
-export function Summary({ decided, vehicleId }: { decided: Decided; vehicleId: string }) {
+export const Summary = memo(function Summary({ decided, vehicleId }: { decided: Decided; vehicleId: string }) {
   const changes = regionChanges(decided)
   return (
     <section aria-label="What it comes to" className="mt-5">
@@ -37,7 +38,7 @@ export function Summary({ decided, vehicleId }: { decided: Decided; vehicleId: s
       </p>
     </section>
   )
-}
+})
 
 /** The target in the engine, else the latest one. */
 function useTarget(vehicleId: string): { grid: Grid; lambda: number[] } | null {
@@ -51,7 +52,8 @@ function useTarget(vehicleId: string): { grid: Grid; lambda: number[] } | null {
 function Duty({ decided, vehicleId }: { decided: Decided; vehicleId: string }) {
   const sheet = useQuery(vehicleQueries.detail(vehicleId)).data?.sheet
   const target = useTarget(vehicleId)
-  if (!sheet || !target) return null
+  // Its place is kept, so that nothing moves when it arrives.
+  if (!sheet || !target) return <div className="h-[2.625rem]" />
   const { grid, current } = decided.surface
   const lambdaOf = (rpm: number, mapKpa: number) => valueAt(target.grid, target.lambda, rpm, mapKpa)
   const now = highestDuty(sheet, grid, (cell) => current[cell] ?? Number.NaN, lambdaOf)

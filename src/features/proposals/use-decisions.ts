@@ -56,8 +56,11 @@ export function useDecisions(proposal: Proposal & { surface: Surface }): Decisio
 
   const { surface, logs } = proposal
   const ages = useMemo(() => agesOf(surface, logs, new Date()), [surface, logs])
-  const stored: Decided = { surface, decisions: proposal.decisions, byHand: proposal.byHand, ages }
-  const decided = queue.reduce(applyChanges, stored)
+  // The same object until something is decided, so that what depends on it is not drawn for a mere move of the cursor.
+  const decided = useMemo(() => {
+    const stored: Decided = { surface, decisions: proposal.decisions, byHand: proposal.byHand, ages }
+    return queue.reduce(applyChanges, stored)
+  }, [surface, proposal.decisions, proposal.byHand, ages, queue])
 
   const keep = (steps: readonly (readonly CellChange[])[]) => {
     waiting.current = steps

@@ -1,6 +1,6 @@
 /** The open proposal: grid, logs, the card of the selected cell, and the running count. */
 import { Redo2, Undo2 } from 'lucide-react'
-import { lazy, Suspense, useCallback, useState, type KeyboardEvent } from 'react'
+import { lazy, Suspense, useCallback, useDeferredValue, useState, type KeyboardEvent } from 'react'
 import type { Proposal } from '../../../shared/contract/proposals.ts'
 import { formatNumber } from '../../lib/format.ts'
 import { paths } from '../../lib/paths.ts'
@@ -72,6 +72,9 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
   const [preview, setPreview] = useState<ReadonlySet<number>>(new Set())
   const [handOpen, setHandOpen] = useState(false)
   const cells = selection ? cellsOf(grid, selection) : []
+  // What lies below the table is drawn after the table has answered the key.
+  const later = useDeferredValue(decided)
+  const laterCell = useDeferredValue(selection?.focus ?? null)
 
   const onPreview = useCallback((list: readonly number[]) => setPreview(new Set(list)), [])
   const closePanel = () => {
@@ -198,11 +201,11 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
               onSelect={(cell) => setSelection({ anchor: cell, focus: cell })}
             />
           ) : null}
-          <TallyRow decided={decided} revisionNumber={proposal.base.number + 1} />
-          <Summary decided={decided} vehicleId={vehicleId} />
-          {selection ? (
-            <Suspense fallback={null}>
-              <Profile decided={decided} cell={selection.focus} />
+          <TallyRow decided={later} revisionNumber={proposal.base.number + 1} />
+          <Summary decided={later} vehicleId={vehicleId} />
+          {laterCell !== null ? (
+            <Suspense fallback={<div className="h-[17.5rem]" />}>
+              <Profile decided={later} cell={laterCell} />
             </Suspense>
           ) : null}
           <section aria-label="Replay" className="mt-7 border-t border-ink pt-3.5">
