@@ -1,5 +1,5 @@
 /** The proposal's table: the editor, the choice of what its cells show, and a second view beside it with a linked cursor. */
-import type { KeyboardEvent } from 'react'
+import { useMemo, type KeyboardEvent } from 'react'
 import { useRemembered } from '../../lib/remember.ts'
 import { formatNumber, formatSigned } from '../../lib/format.ts'
 import { Heatmap, type HeatmapMark, type Selection } from '../../ui/heatmap/heatmap.tsx'
@@ -51,6 +51,12 @@ function shown(decided: Decided, view: View) {
 export function FuelTable(props: FuelTableProps) {
   const { decided, mayDecide, view, onView, second, selection, onSelect, preview, onKey, onDecide } = props
   const { surface } = decided
+  const first = useMemo(() => shown(decided, view), [decided, view])
+  const beside = useMemo(() => (second === 'none' ? null : shown(decided, second)), [decided, second])
+  const edited = useMemo(
+    () => decided.surface.current.map((_, cell) => viewValue(decided, 'proposed', cell)),
+    [decided],
+  )
   const [decimalMark, setDecimalMark] = useRemembered('decimal-mark', ['point', 'comma'] as const)
   return (
     <>
@@ -59,8 +65,8 @@ export function FuelTable(props: FuelTableProps) {
         <SecondChoice second={second} onChange={props.onSecond} />
       </div>
       <TableEditor
-        {...shown(decided, view)}
-        edited={surface.current.map((_, cell) => viewValue(decided, 'proposed', cell))}
+        {...first}
+        edited={edited}
         mayEdit={mayDecide}
         limits={{ min: 1, max: 200, digits: 1, quantity: 'VE, %' }}
         decimalMark={decimalMark}
@@ -78,17 +84,10 @@ export function FuelTable(props: FuelTableProps) {
         onKey={onKey}
       />
       <Legend view={viewScale[view]} unit={viewUnit[view]} marks />
-      {second === 'none' ? null : (
+      {second === 'none' || beside === null ? null : (
         <div className="mt-6 phone:hidden">
           <h2 className="mb-2 font-semibold">{viewName[second]}</h2>
-          <Heatmap
-            {...shown(decided, second)}
-            selection={selection}
-            onSelect={onSelect}
-            onKey={onKey}
-            preview={preview}
-            snug
-          />
+          <Heatmap {...beside} selection={selection} onSelect={onSelect} onKey={onKey} preview={preview} snug />
           <Legend view={viewScale[second]} unit={viewUnit[second]} />
         </div>
       )}

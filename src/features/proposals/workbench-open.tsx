@@ -136,8 +136,8 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
         </Banner>
       ) : null}
       <DecisionTrouble decisions={decisions} />
-      <div className="mt-6 grid gap-x-8 gap-y-6 laptop:grid-cols-[minmax(0,1fr)_var(--leaf-margin)] desk:grid-cols-[var(--leaf-rail)_minmax(0,1fr)_var(--leaf-margin)]">
-        <div className="order-3 laptop:order-none laptop:col-start-1 desk:border-r desk:border-rule desk:pr-6">
+      <div className="mt-6 grid gap-x-8 gap-y-6 laptop:grid-cols-[minmax(0,1fr)_var(--leaf-margin)] laptop:grid-rows-[auto_auto_1fr] desk:grid-rows-[auto_1fr] desk:grid-cols-[var(--leaf-rail)_minmax(0,1fr)_var(--leaf-margin)]">
+        <div className="order-3 laptop:order-none laptop:col-start-1 desk:row-span-2 desk:row-start-1 desk:border-r desk:border-rule desk:pr-6">
           <LogsRail proposal={proposal} vehicleId={vehicleId} maySwitch={mayDecide && !decisions.pending} />
           {proposal.surface.diagnoses.map((diagnosis) => (
             <div key={diagnosis.kind} className="mt-5">
@@ -153,7 +153,7 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
             </ButtonLink>
           </p>
         </div>
-        <section aria-label="Fuel table" className="min-w-0 laptop:col-start-1 desk:col-start-2">
+        <section aria-label="Fuel table" className="min-w-0 laptop:col-start-1 desk:col-start-2 desk:row-start-1">
           {panel === 'rule' ? (
             <DecideByRule
               decided={decided}
@@ -201,6 +201,8 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
               onSelect={(cell) => setSelection({ anchor: cell, focus: cell })}
             />
           ) : null}
+        </section>
+        <div className="order-2 min-w-0 laptop:order-none laptop:col-start-1 desk:col-start-2 desk:row-start-2">
           <TallyRow decided={later} revisionNumber={proposal.base.number + 1} />
           <Summary decided={later} vehicleId={vehicleId} />
           {laterCell !== null ? (
@@ -225,8 +227,8 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
               </Suspense>
             ) : null}
           </section>
-        </section>
-        <div className="laptop:col-start-2 laptop:row-span-2 laptop:row-start-1 desk:col-start-3">
+        </div>
+        <div className="order-1 laptop:order-none laptop:col-start-2 laptop:row-span-3 laptop:row-start-1 desk:col-start-3 desk:row-span-2">
           {selection ? (
             <CellCard
               proposal={proposal}

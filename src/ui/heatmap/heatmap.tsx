@@ -1,5 +1,5 @@
 /** The table of cells: a real grid with headers, arrow keys and ranges; load rises upward, speed runs to the right. */
-import { useRef, type ClipboardEventHandler, type KeyboardEvent, type MouseEvent, type ReactNode } from 'react'
+import { useMemo, useRef, type ClipboardEventHandler, type KeyboardEvent, type MouseEvent, type ReactNode } from 'react'
 import type { Grid } from '../../../shared/grid.ts'
 import { Cell, type HeatmapMark } from './cell.tsx'
 import { familyOf, toneOf, type HeatmapView } from './scale.ts'
@@ -130,20 +130,28 @@ function Rows(props: HeatmapProps & { onRow: (row: number) => void }) {
   const cols = grid.rpm.length
   const selected = new Set(selection ? cellsOf(grid, selection) : [])
   const focus = selection?.focus ?? 0
-  const family = familyOf(view)
+  const { format, formatNarrow, none, mark, evidenceS, cellLabel } = props
+  // A move of the cursor changes none of this; a page that keeps its functions is spared writing every cell anew.
+  const written = useMemo(() => {
+    const family = familyOf(view)
+    return values.map((value, cell) => {
+      const tone = none(cell) ? null : toneOf(view, value)
+      return {
+        text: value === null ? null : format(value),
+        narrow: value === null || !formatNarrow ? null : formatNarrow(value),
+        label: cellLabel(cell),
+        tone: tone === null ? null : `${family}-${tone}`,
+        mark: mark?.(cell) ?? null,
+        rule: ruleWidth(evidenceS?.[cell] ?? 0),
+      }
+    })
+  }, [values, view, format, formatNarrow, none, mark, evidenceS, cellLabel])
   const cellOf = (cell: number) => {
-    const value = values[cell] ?? null
-    const tone = props.none(cell) ? null : toneOf(view, value)
     return (
       <Cell
         key={cell}
         cell={cell}
-        text={value === null ? null : props.format(value)}
-        narrow={value === null || !props.formatNarrow ? null : props.formatNarrow(value)}
-        label={props.cellLabel(cell)}
-        tone={tone === null ? null : `${family}-${tone}`}
-        mark={props.mark?.(cell) ?? null}
-        rule={ruleWidth(props.evidenceS?.[cell] ?? 0)}
+        {...written[cell]!}
         selected={selected.has(cell)}
         tabbable={focus === cell}
         preview={props.preview?.has(cell) ?? false}
