@@ -2,6 +2,7 @@
 import { randomUUID } from 'node:crypto'
 import { existsSync } from 'node:fs'
 import { resolve } from 'node:path'
+import compression from 'compression'
 import express, { Router, type Express } from 'express'
 import helmet from 'helmet'
 import { pinoHttp } from 'pino-http'
@@ -90,9 +91,16 @@ export function buildApp(deps: Deps, siteDir: string | null): Express {
 const loggedPath = (url: string): string =>
   (url.split('?')[0] ?? '').replace(/\/(password-resets|invitation-links|reset|invitation)\/[^/]+/, '/$1/…')
 
-/** The built client: hashed assets for ever, the page for every other address. */
+/**
+ * The built client: hashed assets for ever, the page for every other address. Only these are compressed: in an answer
+ * that holds a secret beside what a stranger wrote, the size would tell of it.
+ */
 function serveSite(app: Express, root: string): void {
-  app.use('/assets', express.static(resolve(root, 'assets'), { immutable: true, maxAge: '1y', fallthrough: false }))
+  app.use(
+    '/assets',
+    compression(),
+    express.static(resolve(root, 'assets'), { immutable: true, maxAge: '1y', fallthrough: false }),
+  )
   app.use(express.static(root, { index: false, maxAge: '5m' }))
   app.get(['/', '/*path'], (_req, res) => {
     res.setHeader('Cache-Control', 'no-cache')

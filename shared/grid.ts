@@ -21,6 +21,9 @@ export const cellCount = (grid: Grid): number => grid.rpm.length * grid.mapKpa.l
 
 export const cellIndex = (grid: Grid, row: number, col: number): number => row * grid.rpm.length + col
 
+/** High load begins here, kPa: 0.7 of the axis' top, or of 103 kPa on a boosted axis. */
+export const highLoadKpa = (grid: Grid): number => 0.7 * Math.min(grid.mapKpa.at(-1)!, 103)
+
 export const sameGrid = (a: Grid, b: Grid): boolean =>
   a.rpm.length === b.rpm.length &&
   a.mapKpa.length === b.mapKpa.length &&

@@ -51,6 +51,8 @@ export interface LogShare extends MaskTotals {
   readonly farPct: number
   /** Chi-square per cell of this log against all others; above 2 it speaks of another engine. NaN for a lone log. */
   readonly disagreement: number
+  /** Useful seconds in each cell, n long. */
+  readonly evidenceS: Float64Array
 }
 
 export interface Learned {
@@ -254,6 +256,7 @@ function propose(logs: readonly LogMemory[], ground: Ground, together: Together)
       driftPct: 100 * log.nature.driftSd,
       farPct: farthest(log, x),
       disagreement: together.disagreement[i]?.perCell ?? Number.NaN,
+      evidenceS: log.evidenceS,
     })),
     path,
     delay: {

@@ -1,12 +1,10 @@
 /** `npm test`: sets up, runs every check there is, and ends with one line that counts them. */
 import { existsSync, readFileSync, rmSync } from 'node:fs'
 import { join } from 'node:path'
-import { buildClient } from './build.mjs'
-import { keepRunning, waitUntilReady } from './children.mjs'
-import { endPrograms, runQuietly, runShown } from './commands.mjs'
+import { endPrograms, runShown } from './commands.mjs'
 import { ensureChromium } from './packages.mjs'
-import { kernelPort } from './ports.mjs'
-import { dataDir, ensureDatabase, prepare, root } from './setup.mjs'
+import { dataDir, prepare, root } from './setup.mjs'
+import { startTrial } from './trial.mjs'
 
 const bin = (name) => join(root, 'node_modules', '.bin', name)
 const totals = { passed: 0, failed: 0 }
@@ -42,47 +40,20 @@ async function vitest(env) {
   if (code !== 0 && found.numFailedTests === 0) count(0, 1)
 }
 
-/** A product of its own for the browser: fresh database, seeded demo, web and worker processes. */
 async function browser(adminUrl, baseEnv) {
   console.log('\n== Browser tests')
   const chromium = ensureChromium()
-  buildClient(root)
-  const port = await kernelPort()
-  const home = join(dataDir, 'e2e')
-  rmSync(home, { recursive: true, force: true })
-  const env = {
-    ...baseEnv,
-    NODE_ENV: 'production',
-    DATABASE_URL: await ensureDatabase(adminUrl, 'evenburn_e2e', { fresh: true }),
-    EVENBURN_DATA: home,
-    SESSION_SECRET: 'a secret for browser tests only, long enough',
-    EVENBURN_DEMO: '1',
-    PORT: String(port),
-    PUBLIC_URL: `http://localhost:${port}`,
-    LOG_LEVEL: 'warn',
-    TRY_LIMIT: '100',
-  }
-  const tsx = ['--import', 'tsx']
-  runQuietly(process.execPath, [...tsx, 'server/migrate.ts'], { cwd: root, env })
-  runQuietly(process.execPath, [...tsx, 'server/seed.ts'], { cwd: root, env })
-  const children = keepRunning(
-    [
-      { name: 'web', args: [...tsx, 'server/main.ts'] },
-      { name: 'worker', args: [...tsx, 'server/worker.ts'] },
-    ],
-    { cwd: root, env },
-  )
+  const product = await startTrial(adminUrl, 'e2e', { ...baseEnv, TRY_LIMIT: '100' })
   const report = join(dataDir, 'playwright.json')
   rmSync(report, { force: true })
   let code = 1
   try {
-    await waitUntilReady(`http://127.0.0.1:${port}/api/health`)
     code = await runShown(bin('playwright'), ['test'], {
       cwd: root,
-      env: { ...env, CHROMIUM: chromium, E2E_URL: env.PUBLIC_URL, PLAYWRIGHT_JSON_OUTPUT_NAME: report },
+      env: { ...product.env, CHROMIUM: chromium, E2E_URL: product.url, PLAYWRIGHT_JSON_OUTPUT_NAME: report },
     })
   } finally {
-    await children.stop()
+    await product.stop()
   }
   const stats = readReport(report)?.stats
   if (!stats || stats.expected + stats.unexpected === 0) return count(0, 1)

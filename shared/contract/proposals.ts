@@ -31,6 +31,8 @@ export const LogShare = z.object({
   driftPct: z.number(),
   /** Chi-square per cell against the other logs; above 2 it speaks of another engine. Null for a lone log. */
   disagreement: z.number().nullable(),
+  /** Useful seconds in each cell; empty in proposals learned before it was kept. */
+  evidenceS: Numbers.default([]),
 })
 export type LogShare = z.infer<typeof LogShare>
 
@@ -51,7 +53,16 @@ export const ProposalLine = z.object({
   requestedAt: Instant,
   base: z.object({ id: Id, number: z.number().int() }),
   /** `used` is false for a log that was switched off. */
-  logs: z.array(z.object({ id: Id, number: z.number().int(), title: z.string(), used: z.boolean() })),
+  logs: z.array(
+    z.object({
+      id: Id,
+      number: z.number().int(),
+      title: z.string(),
+      used: z.boolean(),
+      /** The day it was recorded, or uploaded where that was not said. */
+      drivenOn: z.iso.date(),
+    }),
+  ),
   counts: z
     .object({ known: z.number(), total: z.number(), open: z.number(), held: z.number(), changed: z.number() })
     .nullable(),

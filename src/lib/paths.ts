@@ -18,6 +18,9 @@ export const paths = {
   tables: (vehicleId: string) => `${vehicle(vehicleId)}/tables`,
   logs: (vehicleId: string) => `${vehicle(vehicleId)}/logs`,
   log: (vehicleId: string, logId: string) => `${vehicle(vehicleId)}/logs/${logId}`,
+  /** The log's trace around a stretch of the drive, s. */
+  logAt: (vehicleId: string, logId: string, fromS: number, toS: number) =>
+    `${vehicle(vehicleId)}/logs/${logId}?from=${Math.floor(fromS)}&to=${Math.ceil(toS)}`,
   workbench: (vehicleId: string) => `${vehicle(vehicleId)}/workbench`,
   workbenchStart: (vehicleId: string) => `${vehicle(vehicleId)}/workbench/new`,
   proposal: (vehicleId: string, proposalId: string) => `${vehicle(vehicleId)}/workbench/${proposalId}`,

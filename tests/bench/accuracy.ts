@@ -1,5 +1,5 @@
 /** How near the learner comes to the simulator's truth, beside what people and the literature do; and what the guard costs. */
-import { highLoadKpa } from '../../server/core/fit/guard.ts'
+import { highLoadKpa } from '../../shared/grid.ts'
 import { learn, type Learned } from '../../server/core/learn.ts'
 import { totalDelayS } from '../../server/core/model/path.ts'
 import { prepare, Role } from '../../server/core/model/prepare.ts'

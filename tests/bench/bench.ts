@@ -5,6 +5,7 @@ import { flashAndDrive } from './flash.ts'
 import { ingest } from './ingest.ts'
 import { writeReport } from './report.ts'
 import { speed } from './speed.ts'
+import { web } from './web.ts'
 
 const groups: Readonly<Record<string, () => void | Promise<void>>> = {
   accuracy,
@@ -13,6 +14,7 @@ const groups: Readonly<Record<string, () => void | Promise<void>>> = {
   faults,
   speed,
   ingest,
+  web,
 }
 const wanted = process.argv.slice(2)
 const unknown = wanted.filter((name) => !(name in groups))

@@ -62,7 +62,7 @@ test('A tuner uploads a log, accepts cells, a reviewer signs, the owner sees it,
   await page.getByLabel('VE by hand').fill('61,5')
   await page.keyboard.press('Enter')
   await expect(page.getByRole('gridcell', { name: /2000 rpm, 46 kPa: 61.5.*by hand/ })).toBeVisible()
-  await page.getByRole('button', { name: 'Accept by rule' }).click()
+  await page.getByRole('button', { name: 'Decide by rule' }).click()
   await page.getByLabel('Evidence at least').fill('2')
   await page.getByRole('button', { name: /^Accept \d+ cells$/ }).click()
   await expect(page.getByText('Saved')).toBeVisible()

@@ -1,5 +1,5 @@
 /** The lean guard: at high load no cell goes leaner than the rich side of what the evidence carries. */
-import type { Grid } from '../../../shared/grid.ts'
+import { highLoadKpa, type Grid } from '../../../shared/grid.ts'
 
 export interface HeldCell {
   readonly cell: number
@@ -25,9 +25,6 @@ export interface GuardInput {
   /** Largest step of one revision, %. */
   readonly stepCapPct: number
 }
-
-/** High load begins here: 0.7 of the axis' top, or of 103 kPa on a boosted axis. */
-export const highLoadKpa = (grid: Grid): number => 0.7 * Math.min(grid.mapKpa.at(-1)!, 103)
 
 /** Applies guard and step cap; cells without evidence keep their current value. */
 export function guard(input: GuardInput): Guarded {

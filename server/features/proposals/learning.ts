@@ -139,6 +139,7 @@ export function surfaceOf(learned: Learned): NonNullable<Proposal['surface']> {
       noisePct: log.noisePct,
       driftPct: log.driftPct,
       disagreement: Number.isFinite(log.disagreement) ? log.disagreement : null,
+      evidenceS: toWire(log.evidenceS.map((seconds) => Math.round(seconds * 100) / 100)),
     })),
     path: learned.path,
     delay: learned.delay,

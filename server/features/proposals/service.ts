@@ -61,7 +61,13 @@ async function toLine(db: Reader, { row, requester, baseNumber }: store.Proposal
     requestedBy: requester,
     requestedAt: row.createdAt.toISOString(),
     base: { id: row.baseRevisionId, number: baseNumber },
-    logs: logs.map(({ id, number, title, used }) => ({ id, number, title, used })),
+    logs: logs.map(({ id, number, title, used, recordedOn, createdAt }) => ({
+      id,
+      number,
+      title,
+      used,
+      drivenOn: recordedOn ?? createdAt.toISOString().slice(0, 10),
+    })),
     counts: countsOf(row),
     revisionId: row.revisionId,
   }

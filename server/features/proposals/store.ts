@@ -51,7 +51,15 @@ export async function lastNumber(tx: Tx, vehicleId: string): Promise<number> {
 
 export const logsOf = (db: Reader, proposalId: string) =>
   db
-    .select({ id: logs.id, number: logs.number, title: logs.title, sha256: logs.sha256, used: proposalLogs.used })
+    .select({
+      id: logs.id,
+      number: logs.number,
+      title: logs.title,
+      sha256: logs.sha256,
+      recordedOn: logs.recordedOn,
+      createdAt: logs.createdAt,
+      used: proposalLogs.used,
+    })
     .from(proposalLogs)
     .innerJoin(logs, eq(logs.id, proposalLogs.logId))
     .where(eq(proposalLogs.proposalId, proposalId))

@@ -1,7 +1,7 @@
 /** The change in figures, and the cells a reviewer should look at before the rest, by risk. Pure. */
 import type { ChangeSummary, LookFirst } from '../../../shared/contract/reviews.ts'
 import type { Revision } from '../../../shared/contract/tables.ts'
-import { highLoadKpa } from '../../core/fit/guard.ts'
+import { highLoadKpa } from '../../../shared/grid.ts'
 
 /** A jump against a neighbour above this deserves a flag: common practice, no source. */
 const steepPct = 9

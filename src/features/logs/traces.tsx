@@ -1,6 +1,7 @@
 /** The traces of a log: chosen channels on one time axis, zoomed by choosing a stretch. */
 import { useQuery } from '@tanstack/react-query'
 import { useEffect, useRef, useState } from 'react'
+import { useSearchParams } from 'react-router-dom'
 import type { ChannelName, Log } from '../../../shared/contract/logs.ts'
 import { formatClock } from '../../lib/format.ts'
 import { Banner } from '../../ui/banner.tsx'
@@ -27,11 +28,22 @@ function useWidth() {
   return { ref, width }
 }
 
+/** Seconds shown before and after the stretch an address names. */
+const beside = 10
+
+/** The stretch that the address names, with a little before and after; else the whole drive. */
+function stretchAsked(search: URLSearchParams, durationS: number): { from: number; to: number } {
+  const [from, to] = [Number(search.get('from') ?? Number.NaN), Number(search.get('to') ?? Number.NaN)]
+  if (!(from >= 0 && to >= from && from < durationS)) return { from: 0, to: durationS }
+  return { from: Math.max(0, from - beside), to: Math.min(durationS, to + beside) }
+}
+
 export function Traces({ log }: { log: Log }) {
   const [chosen, setChosen] = useState<readonly ChannelName[]>(() =>
     usual.filter((name) => log.channels.includes(name)),
   )
-  const [stretch, setStretch] = useState<{ from: number; to: number }>({ from: 0, to: log.durationS })
+  const [search] = useSearchParams()
+  const [stretch, setStretch] = useState(() => stretchAsked(search, log.durationS))
   const { ref, width } = useWidth()
   const withTarget: ChannelName[] =
     chosen.includes('lambda') && log.channels.includes('targetLambda') ? [...chosen, 'targetLambda'] : [...chosen]

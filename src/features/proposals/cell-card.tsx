@@ -1,21 +1,31 @@
 /** The note on the selected cell: what it is, what is proposed, why, and the decision. */
-import { ArrowRight, Pin, Shield } from 'lucide-react'
-import { useState } from 'react'
+import { ArrowRight, Shield, TriangleAlert } from 'lucide-react'
+import { lazy, Suspense, useState } from 'react'
+import type { Proposal } from '../../../shared/contract/proposals.ts'
 import { formatNumber, formatSigned } from '../../lib/format.ts'
 import { Button } from '../../ui/button.tsx'
 import { Facts } from '../../ui/facts.tsx'
 import { Status } from '../../ui/status.tsx'
+import { DecisionButtons } from './decision-buttons.tsx'
 import {
   cellState,
   changePct,
-  readNumber,
+  decideAll,
+  hasEvidence,
+  setByHand,
   takenValue,
   type CellChange,
   type CellState,
   type Decided,
+  type Surface,
 } from './decisions.ts'
+import { guardSentence, leanerThanGuard, logParts } from './evidence.ts'
+
+/** Charts are fetched when somebody asks for the samples. */
+const CellSamples = lazy(() => import('./cell-samples.tsx'))
 
 interface CellCardProps {
+  readonly proposal: Proposal & { surface: Surface }
   readonly decided: Decided
   /** The cell the card speaks of. */
   readonly cell: number
@@ -36,7 +46,7 @@ const stateWord: Record<CellState, 'Open' | 'Accepted' | 'Kept' | 'By hand' | 'P
   none: 'No evidence',
 }
 
-export function CellCard({ decided, cell, cells, mayDecide, handInput, onDecide }: CellCardProps) {
+export function CellCard({ proposal, decided, cell, cells, mayDecide, handInput, onDecide }: CellCardProps) {
   const { surface } = decided
   const cols = surface.grid.rpm.length
   const rpm = surface.grid.rpm[cell % cols]
@@ -46,8 +56,10 @@ export function CellCard({ decided, cell, cells, mayDecide, handInput, onDecide 
   const shown = state === 'open' || state === 'held' ? (surface.proposed[cell] ?? current) : takenValue(decided, cell)
   const change = changePct(current, shown)
   const sigma = surface.sigmaPct[cell]
-  const held = surface.held.find((entry) => entry.cell === cell)
-  const decide = (decision: CellChange['decision']) => onDecide(cells.map((each) => ({ cell: each, decision })))
+  const held = surface.held.some((entry) => entry.cell === cell)
+  const guarded = guardSentence(surface, cell, Number(proposal.settings['stepCapPct'] ?? 20))
+  const [isShowing, setIsShowing] = useState(false)
+  const decide = (decision: Exclude<CellChange['decision'], 'by-hand'>) => onDecide(decideAll(decided, cells, decision))
   return (
     <aside aria-label={`Cell ${rpm} rpm, ${mapKpa} kPa`} aria-live="polite">
       <div className="flex items-baseline justify-between">
@@ -89,31 +101,87 @@ export function CellCard({ decided, cell, cells, mayDecide, handInput, onDecide 
           },
           { label: 'Evidence', value: formatNumber(surface.evidenceS[cell] ?? 0, 1), unit: 's' },
           { label: 'Misfit', value: formatOrDash(surface.misfitPct[cell]), unit: '%' },
+          { label: 'Visits', value: formatNumber(surface.visits[cell] ?? 0) },
           { label: 'By the nearest-cell average', value: formatOptional(surface.handNearest[cell]), unit: 'VE' },
           { label: 'By the bilinear average', value: formatOptional(surface.handBilinear[cell]), unit: 'VE' },
+          ...((surface.byPulse[cell] ?? null) === null
+            ? []
+            : [{ label: 'By the fuel delivered', value: formatOptional(surface.byPulse[cell]), unit: 'VE' }]),
         ]}
       />
+      <LogParts proposal={proposal} cell={cell} />
       <div className="mt-3.5 mb-4 text-ink-quiet">
         {cells.length > 1 ? (
-          <p>{formatNumber(cells.length)} cells are selected; a decision goes to all of them.</p>
+          <p>{formatNumber(cells.length)} cells are selected; a decision goes to all of them but pinned ones.</p>
         ) : null}
         {state === 'none' ? <p>No log has been here. The value is the one the table came with.</p> : null}
-        {held ? (
+        {guarded ? (
           <p className="mt-1">
-            <span className="flex items-center gap-1.5 font-semibold text-copper">
-              <Shield size={14} strokeWidth={2.25} aria-hidden />
-              Held
-            </span>
-            {held.reason}
+            {held ? (
+              <span className="flex items-center gap-1.5 font-semibold text-copper">
+                <Shield size={14} strokeWidth={2.25} aria-hidden />
+                Held
+              </span>
+            ) : null}
+            {guarded}
           </p>
         ) : null}
       </div>
+      {(state === 'by-hand' || state === 'pinned') && leanerThanGuard(surface, cell, shown) ? (
+        <p className="mb-4 flex gap-1.5 text-copper">
+          <TriangleAlert size={14} strokeWidth={2.25} aria-hidden className="mt-1 shrink-0" />
+          Leaner at high load than the evidence carries. Lean mixture under load melts pistons.
+        </p>
+      ) : null}
       {mayDecide ? (
-        <DecisionButtons {...{ cells, state, current, decide, handInput, onDecide }} shown={shown} />
+        <DecisionButtons
+          {...{ cells, state, decide, handInput, shown }}
+          onByHand={(value) =>
+            onDecide(
+              setByHand(
+                decided,
+                cells.map((each) => ({ cell: each, value })),
+              ),
+            )
+          }
+        />
       ) : (
         <p className="text-ink-quiet">Decisions are the tuner’s; you can read and comment.</p>
       )}
+      {hasEvidence(surface, cell) ? (
+        <div className="mt-4">
+          <Button variant="word" aria-expanded={isShowing} onClick={() => setIsShowing(!isShowing)}>
+            {isShowing ? 'Hide the samples' : 'Show the samples behind it'}
+          </Button>
+          {isShowing ? (
+            <Suspense fallback={null}>
+              <CellSamples proposal={proposal} cell={cell} />
+            </Suspense>
+          ) : null}
+        </div>
+      ) : null}
     </aside>
+  )
+}
+
+/** Which logs spoke for the cell, and how much each. */
+function LogParts({ proposal, cell }: { proposal: Proposal & { surface: Surface }; cell: number }) {
+  const parts = logParts(proposal.surface, proposal.logs, cell)
+  if (parts.length === 0) return null
+  return (
+    <ul aria-label="Logs that spoke for this cell" className="mt-3 text-small text-ink-quiet">
+      {parts.map(({ log, seconds, share }) => (
+        <li key={log.id} className="flex items-center gap-2 py-0.5">
+          <span className="w-14 shrink-0">Log {log.number}</span>
+          <span aria-hidden className="h-1.5 grow bg-sunk">
+            <i className="block h-full bg-ink-faint" style={{ width: `${100 * share}%` }} />
+          </span>
+          <span className="w-24 shrink-0 text-right">
+            {formatNumber(seconds, 1)} s, {formatNumber(100 * share)} %
+          </span>
+        </li>
+      ))}
+    </ul>
   )
 }
 
@@ -121,101 +189,3 @@ const formatOptional = (value: number | null | undefined): string =>
   value === null || value === undefined ? 'none' : formatNumber(value, 1)
 const formatOrDash = (value: number | null | undefined): string =>
   value === null || value === undefined ? 'none' : formatSigned(value, 1)
-
-interface DecisionButtonsProps {
-  readonly cells: readonly number[]
-  readonly state: CellState
-  readonly current: number
-  readonly shown: number
-  readonly decide: (decision: CellChange['decision']) => void
-  readonly handInput: CellCardProps['handInput']
-  readonly onDecide: CellCardProps['onDecide']
-}
-
-function DecisionButtons({ cells, state, shown, decide, handInput, onDecide }: DecisionButtonsProps) {
-  if (handInput.open) {
-    return (
-      <ByHand
-        start={shown}
-        onCancel={() => handInput.set(false)}
-        onSet={(value) => {
-          handInput.set(false)
-          onDecide(cells.map((cell) => ({ cell, decision: 'by-hand', value })))
-        }}
-      />
-    )
-  }
-  return (
-    <>
-      <div className="grid grid-cols-2 gap-2">
-        <Button
-          variant="solid"
-          kbd="A"
-          disabled={state === 'none' && cells.length === 1}
-          onClick={() => decide('accepted')}
-        >
-          Accept
-        </Button>
-        <Button kbd="K" onClick={() => decide('kept')}>
-          Keep
-        </Button>
-        <Button kbd="H" onClick={() => handInput.set(true)}>
-          By hand
-        </Button>
-        <Button kbd="P" icon={<Pin size={16} strokeWidth={1.75} aria-hidden />} onClick={() => decide('pinned')}>
-          Pin
-        </Button>
-      </div>
-      {state !== 'open' && state !== 'held' && state !== 'none' ? (
-        <Button variant="word" onClick={() => decide('open')}>
-          Open it again
-        </Button>
-      ) : null}
-    </>
-  )
-}
-
-function ByHand({ start, onSet, onCancel }: { start: number; onSet: (value: number) => void; onCancel: () => void }) {
-  const [text, setText] = useState(start.toFixed(1))
-  const value = readNumber(text)
-  const usable = value !== null && value >= 1 && value <= 200
-  return (
-    <form
-      onSubmit={(event) => {
-        event.preventDefault()
-        if (usable) onSet(value)
-      }}
-    >
-      <label className="block font-semibold" htmlFor="by-hand">
-        VE by hand
-      </label>
-      <input
-        id="by-hand"
-        // The field opens on a key press and is the only thing to type into.
-        autoFocus
-        inputMode="decimal"
-        autoComplete="off"
-        value={text}
-        aria-invalid={!usable}
-        aria-describedby="by-hand-hint"
-        onFocus={(event) => event.target.select()}
-        onChange={(event) => setText(event.target.value)}
-        onKeyDown={(event) => {
-          if (event.key === 'Escape') onCancel()
-        }}
-        className="mt-1 h-(--control-h) w-full rounded-cut border border-rule-strong bg-sheet px-3 text-read aria-invalid:border-2 aria-invalid:border-ink"
-      />
-      <p id="by-hand-hint" className="mt-1 text-small text-ink-faint">
-        {usable ? '%, one decimal place, point or comma' : 'A volumetric efficiency lies between 1 and 200 %.'}
-      </p>
-      <div className="mt-3 flex gap-2">
-        <Button variant="solid" type="submit" disabled={!usable}>
-          Set {usable ? formatNumber(value, 1) : 'value'}
-        </Button>
-        <Button type="button" onClick={onCancel}>
-          Leave it
-        </Button>
-      </div>
-    </form>
-  )
-}

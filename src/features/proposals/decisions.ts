@@ -17,6 +17,15 @@ export interface Decided {
   readonly surface: Surface
   readonly decisions: readonly CellDecision[]
   readonly byHand: readonly (number | null)[]
+  /** Days since the last drive that spoke for each cell. */
+  readonly ages?: readonly (number | null)[]
+}
+
+const heldCells = new WeakMap<Surface, ReadonlySet<number>>()
+function isHeld(surface: Surface, cell: number): boolean {
+  let held = heldCells.get(surface)
+  if (!held) heldCells.set(surface, (held = new Set(surface.held.map((each) => each.cell))))
+  return held.has(cell)
 }
 
 export const hasEvidence = (surface: Surface, cell: number): boolean => (surface.evidenceS[cell] ?? 0) > 0
@@ -26,7 +35,7 @@ export function cellState({ surface, decisions }: Decided, cell: number): CellSt
   if (decision !== 'open' && decision !== 'kept') return decision
   if (!hasEvidence(surface, cell)) return 'none'
   if (decision === 'kept') return 'kept'
-  return surface.held.some((held) => held.cell === cell) ? 'held' : 'open'
+  return isHeld(surface, cell) ? 'held' : 'open'
 }
 
 /** The value the next revision takes, %: open, held and kept cells keep the current one. */
@@ -69,25 +78,75 @@ export function tally(decided: Decided): Tally {
   return { accepted, byHand: counts['by-hand'], kept, pinned, held, open, none, changed, largestPct }
 }
 
+/** What a rule can do with the cells that meet it. */
+export const ruleActions = ['accepted', 'kept', 'pinned', 'open'] as const
+export type RuleAction = (typeof ruleActions)[number]
+
 export interface Rule {
+  readonly action: RuleAction
   /** Least evidence, s. */
   readonly evidenceS: number
   /** Least change, as a multiple of its own 1-sd uncertainty; 0 takes every change. */
   readonly sigmas: number
+  /** Largest change, %; Infinity takes every change. */
+  readonly mostPct: number
+  readonly direction: 'either' | 'richer' | 'leaner'
+  /** Null for the whole table. */
+  readonly among: ReadonlySet<number> | null
 }
 
-/** Open cells a rule would accept; held cells are never among them. */
+/** The states a rule looks at: it never accepts a held cell, and only reopening touches what is decided. */
+const ruleStates: Record<RuleAction, readonly CellState[]> = {
+  accepted: ['open'],
+  kept: ['open', 'held'],
+  pinned: ['open', 'held', 'none'],
+  open: ['accepted', 'kept', 'by-hand', 'pinned'],
+}
+
+/** The cells a rule would decide, ascending. A cell that no log has been in changes by 0 and has no uncertainty. */
 export function cellsByRule(decided: Decided, rule: Rule): number[] {
   const { surface } = decided
   const cells: number[] = []
   for (let cell = 0; cell < surface.current.length; cell += 1) {
-    if (cellState(decided, cell) !== 'open') continue
+    if (rule.among && !rule.among.has(cell)) continue
+    if (!ruleStates[rule.action].includes(cellState(decided, cell))) continue
     if ((surface.evidenceS[cell] ?? 0) < rule.evidenceS) continue
-    const change = Math.abs(changePct(surface.current[cell] ?? Number.NaN, surface.proposed[cell] ?? Number.NaN))
-    if (change >= rule.sigmas * (surface.sigmaPct[cell] ?? Infinity)) cells.push(cell)
+    const change = changePct(surface.current[cell] ?? Number.NaN, surface.proposed[cell] ?? Number.NaN)
+    if (rule.direction !== 'either' && Math.sign(change) !== (rule.direction === 'richer' ? 1 : -1)) continue
+    if (Math.abs(change) > rule.mostPct) continue
+    if (rule.sigmas === 0 || Math.abs(change) >= rule.sigmas * (surface.sigmaPct[cell] ?? Infinity)) cells.push(cell)
   }
   return cells
 }
+
+/**
+ * One decision for many cells. Accepting leaves out cells without evidence, accepting and keeping leave out pinned
+ * ones, pinning holds what the cell has by hand.
+ */
+export function decideAll(
+  { surface, decisions, byHand }: Decided,
+  cells: readonly number[],
+  decision: Exclude<CellDecision, 'by-hand'>,
+): CellChange[] {
+  if (decision === 'accepted' || decision === 'kept') {
+    return cells
+      .filter((cell) => decisions[cell] !== 'pinned' && (decision === 'kept' || hasEvidence(surface, cell)))
+      .map((cell) => ({ cell, decision }))
+  }
+  return cells.map((cell) => {
+    const value = decision === 'pinned' ? (byHand[cell] ?? null) : null
+    return value === null ? { cell, decision } : { cell, decision, value }
+  })
+}
+
+/** Values by hand; a pinned cell does not move until its pin is taken off. */
+export const setByHand = (
+  { decisions }: Decided,
+  cells: readonly { readonly cell: number; readonly value: number }[],
+): CellChange[] =>
+  cells
+    .filter(({ cell }) => decisions[cell] !== 'pinned')
+    .map(({ cell, value }) => ({ cell, decision: 'by-hand', value }))
 
 /** The changes that put the cells back to what they are now. */
 export function inverseOf(decided: Decided, changes: readonly CellChange[]): CellChange[] {
@@ -106,11 +165,14 @@ export function applyChanges(decided: Decided, changes: readonly CellChange[]): 
     decisions[cell] = decision
     byHand[cell] = value ?? null
   }
-  return { surface: decided.surface, decisions, byHand }
+  return { ...decided, decisions, byHand }
 }
 
-/** Reads a number typed with a point or a comma; null where it is none. */
-export function readNumber(text: string): number | null {
-  const value = Number(text.trim().replace(',', '.'))
-  return text.trim() === '' || !Number.isFinite(value) ? null : value
-}
+/** True where every cell already stands as the changes would leave it. */
+export const holds = (
+  { decisions, byHand }: Pick<Decided, 'decisions' | 'byHand'>,
+  changes: readonly CellChange[],
+): boolean =>
+  changes.every(
+    ({ cell, decision, value }) => decisions[cell] === decision && (byHand[cell] ?? null) === (value ?? null),
+  )

@@ -1,14 +1,16 @@
 /** Server state of proposals: what is read, how long it is fresh, and the changes. */
-import { queryOptions, useMutation, useQueryClient } from '@tanstack/react-query'
+import { keepPreviousData, queryOptions, useMutation, useQueryClient } from '@tanstack/react-query'
 import {
   cancelProposal,
   carryOver,
   chooseLogs,
   decideCells,
   getMoved,
+  getCellSamples,
   getProposal,
   listProposals,
   makeRevision,
+  replayDrive,
   requestProposal,
   type Proposal,
 } from '../../../shared/contract/proposals.ts'
@@ -16,6 +18,8 @@ import type { ProposalState } from '../../../shared/lifecycle.ts'
 import { call } from '../../lib/api.ts'
 
 const running = (state: ProposalState | undefined): boolean => state === 'queued' || state === 'learning'
+
+const usedOf = (logs: Proposal['logs']) => logs.filter(({ used }) => used).map(({ id }) => id)
 
 export const proposalQueries = {
   all: () => ['proposals'] as const,
@@ -35,6 +39,21 @@ export const proposalQueries = {
       queryKey: [...proposalQueries.all(), 'moved', proposalId],
       queryFn: ({ signal }) => call(getMoved, { params: { proposalId }, signal }),
     }),
+  /** The readings behind a cell change with the logs in use, not with the decisions. */
+  samples: ({ id, logs }: Proposal, cell: number) =>
+    queryOptions({
+      queryKey: [...proposalQueries.all(), 'samples', id, usedOf(logs), cell],
+      queryFn: ({ signal }) => call(getCellSamples, { params: { proposalId: id, cell }, signal }),
+      staleTime: Infinity,
+    }),
+  /** A drive with the table as decided: every version of the proposal gives another one. */
+  replay: ({ id, version }: Proposal, query: { logId: string; fromS: number; toS: number }) =>
+    queryOptions({
+      queryKey: [...proposalQueries.all(), 'replay', id, version, query],
+      queryFn: ({ signal }) => call(replayDrive, { params: { proposalId: id }, query, signal }),
+      placeholderData: keepPreviousData,
+      staleTime: Infinity,
+    }),
 }
 
 export function useRequestProposal(vehicleId: string) {
@@ -49,17 +68,23 @@ export function useRequestProposal(vehicleId: string) {
 /** Sends decisions with the version they were made on; the answer replaces the proposal on the page. */
 export function useDecideCells(proposalId: string) {
   const client = useQueryClient()
-  return useMutation({
+  const detail = proposalQueries.detail(proposalId)
+  const mutation = useMutation({
     mutationFn: (body: {
       version: number
       cells: { cell: number; decision: Proposal['decisions'][number]; value?: number }[]
     }) => call(decideCells, { params: { proposalId }, body }),
     onSuccess: (proposal) => {
-      client.setQueryData(proposalQueries.detail(proposalId).queryKey, proposal)
+      client.setQueryData(detail.queryKey, proposal)
     },
     // Refused because somebody else decided meanwhile: their decisions are fetched before anything more is sent.
-    onError: () => client.invalidateQueries({ queryKey: proposalQueries.detail(proposalId).queryKey }),
+    onError: () => client.invalidateQueries({ queryKey: detail.queryKey }),
   })
+  return {
+    decide: mutation.mutateAsync,
+    error: mutation.error,
+    fetchAgain: () => client.fetchQuery({ ...detail, staleTime: 0 }),
+  }
 }
 
 /** Switches logs on or off; the answer is the proposal with its new surface. */

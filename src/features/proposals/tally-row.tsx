@@ -1,6 +1,6 @@
 /** The running count of decisions under the grid, and what the next revision would be. */
 import { Check, Equal, Pencil, Pin, Shield } from 'lucide-react'
-import type { ReactNode } from 'react'
+import { memo, type ReactNode } from 'react'
 import { formatNumber, formatSigned } from '../../lib/format.ts'
 import { tally, type Decided } from './decisions.ts'
 
@@ -19,7 +19,13 @@ const NoneMark = () => (
   <i aria-hidden className="inline-block h-2.5 w-3.5 border border-rule [background:var(--hatch)]" />
 )
 
-export function TallyRow({ decided, revisionNumber }: { decided: Decided; revisionNumber: number }) {
+export const TallyRow = memo(function TallyRow({
+  decided,
+  revisionNumber,
+}: {
+  decided: Decided
+  revisionNumber: number
+}) {
   const counts = tally(decided)
   const small = { size: 12, strokeWidth: 2.25, 'aria-hidden': true } as const
   return (
@@ -58,4 +64,4 @@ export function TallyRow({ decided, revisionNumber }: { decided: Decided; revisi
       </p>
     </>
   )
-}
+})

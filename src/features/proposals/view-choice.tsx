@@ -6,14 +6,15 @@ const change = ['div-1', 'div-3', 'div-5', 'div-7', 'div-9']
 
 export function ViewChoice({ view, onChange }: { view: View; onChange: (view: View) => void }) {
   return (
-    <div role="radiogroup" aria-label="What the cells show" className="mb-3.5 flex gap-x-5 gap-y-2 overflow-x-auto">
+    <div role="radiogroup" aria-label="What the cells show" className="flex min-w-0 gap-x-5 gap-y-2 overflow-x-auto">
       {views.map((each, i) => (
         <button
           key={each}
           type="button"
           role="radio"
           aria-checked={each === view}
-          title={`Key ${i + 1}`}
+          title={`Alt and ${i + 1}`}
+          aria-keyshortcuts={`Alt+${i + 1}`}
           onClick={() => onChange(each)}
           className="block cursor-pointer border-b-2 border-transparent pb-1 text-left text-ink-quiet aria-checked:border-ink aria-checked:font-semibold aria-checked:text-ink"
         >

@@ -2,7 +2,7 @@
 import type { HeatmapView } from '../../ui/heatmap/heatmap.tsx'
 import { changePct, takenValue, type Decided } from './decisions.ts'
 
-export const views = ['current', 'proposed', 'change', 'evidence', 'uncertainty', 'misfit'] as const
+export const views = ['current', 'proposed', 'change', 'evidence', 'uncertainty', 'misfit', 'age'] as const
 export type View = (typeof views)[number]
 
 export const viewName: Record<View, string> = {
@@ -12,6 +12,7 @@ export const viewName: Record<View, string> = {
   evidence: 'Evidence',
   uncertainty: 'Uncertainty',
   misfit: 'Misfit',
+  age: 'Age',
 }
 
 /** Unit shown beside the legend. */
@@ -22,6 +23,7 @@ export const viewUnit: Record<View, string> = {
   evidence: 'seconds of useful data',
   uncertainty: '± % of the value, one standard deviation',
   misfit: '%, what the fit could not explain',
+  age: 'days since the last drive that spoke for the cell',
 }
 
 export const viewScale: Record<View, HeatmapView> = {
@@ -31,6 +33,7 @@ export const viewScale: Record<View, HeatmapView> = {
   evidence: 'evidence',
   uncertainty: 'uncertainty',
   misfit: 'misfit',
+  age: 'age',
 }
 
 export const viewDigits: Record<View, number> = {
@@ -40,6 +43,7 @@ export const viewDigits: Record<View, number> = {
   evidence: 1,
   uncertainty: 1,
   misfit: 1,
+  age: 0,
 }
 
 /** The value a cell shows in a view; a decided cell shows what the revision takes, an open one what is proposed. */
@@ -61,5 +65,7 @@ export function viewValue(decided: Decided, view: View, cell: number): number | 
       return surface.sigmaPct[cell] ?? null
     case 'misfit':
       return surface.misfitPct[cell] ?? null
+    case 'age':
+      return decided.ages?.[cell] ?? null
   }
 }

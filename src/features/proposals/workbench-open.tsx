@@ -1,25 +1,30 @@
 /** The open proposal: grid, logs, the card of the selected cell, and the running count. */
 import { Redo2, Undo2 } from 'lucide-react'
-import { useState, type KeyboardEvent } from 'react'
+import { lazy, Suspense, useCallback, useDeferredValue, useState, type KeyboardEvent } from 'react'
 import type { Proposal } from '../../../shared/contract/proposals.ts'
-import { formatNumber, formatSigned } from '../../lib/format.ts'
+import { formatNumber } from '../../lib/format.ts'
 import { paths } from '../../lib/paths.ts'
+import { useRemembered } from '../../lib/remember.ts'
 import { useCan } from '../../lib/session.ts'
 import { Banner } from '../../ui/banner.tsx'
 import { Button, ButtonLink, TextLink } from '../../ui/button.tsx'
-import { cellsOf, Heatmap, type HeatmapMark, type Selection } from '../../ui/heatmap/heatmap.tsx'
-import { Legend } from '../../ui/heatmap/legend.tsx'
+import { cellsOf, type Selection } from '../../ui/heatmap/heatmap.tsx'
 import { Note } from '../../ui/note.tsx'
-import { AcceptByRule } from './accept-by-rule.tsx'
 import { CellCard } from './cell-card.tsx'
-import { cellState, hasEvidence, tally, type Decided, type Surface } from './decisions.ts'
+import { DecideByRule } from './decide-by-rule.tsx'
+import { cellState, decideAll, tally, type Decided, type Surface } from './decisions.ts'
+import { FuelTable } from './fuel-table.tsx'
 import { NearCells } from './near-cells.tsx'
 import { LogsRail } from './logs-rail.tsx'
 import { MakeRevision } from './make-revision.tsx'
+import { Summary } from './summary.tsx'
 import { TallyRow } from './tally-row.tsx'
-import { useDecisions } from './use-decisions.ts'
-import { ViewChoice } from './view-choice.tsx'
-import { viewName, views, viewScale, viewUnit, viewValue, type View } from './views.ts'
+import { useDecisions, type Decisions } from './use-decisions.ts'
+import { views } from './views.ts'
+
+/** Charts are fetched when the table already stands. */
+const Profile = lazy(() => import('./profile.tsx'))
+const ReplayPanel = lazy(() => import('./replay-panel.tsx'))
 
 interface WorkbenchOpenProps {
   readonly proposal: Proposal & { surface: Surface }
@@ -32,11 +37,6 @@ export function workbenchSentence(decided: Decided): string {
   if (open > 0) return `${formatNumber(open)} ${open === 1 ? 'cell' : 'cells'} left to decide`
   if (held > 0) return `Everything is decided; ${formatNumber(held)} ${held === 1 ? 'cell is' : 'cells are'} held`
   return changed > 0 ? 'Everything is decided' : 'Nothing changes'
-}
-
-const markOf = (decided: Decided, cell: number): HeatmapMark | null => {
-  const state = cellState(decided, cell)
-  return state === 'accepted' || state === 'none' ? null : state
 }
 
 /** Faults that look like a wrong table, by what they look like. */
@@ -61,36 +61,38 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
   const decisions = useDecisions(proposal)
   const { decided } = decisions
   const { grid } = proposal.surface
-  const [view, setView] = useState<View>('proposed')
+  const [view, setView] = useRemembered('workbench-view', ['proposed', ...views.filter((each) => each !== 'proposed')])
+  const [second, setSecond] = useRemembered('workbench-second', ['none', ...views] as const)
   const [selection, setSelection] = useState<Selection | null>(() => {
     const cell = firstOpen(decided)
     return { anchor: cell, focus: cell }
   })
+  const [replay, setReplay] = useRemembered('workbench-replay', ['closed', 'open'] as const)
   const [panel, setPanel] = useState<'rule' | 'revision' | null>(null)
   const [preview, setPreview] = useState<ReadonlySet<number>>(new Set())
   const [handOpen, setHandOpen] = useState(false)
   const cells = selection ? cellsOf(grid, selection) : []
+  // What lies below the table is drawn after the table has answered the key.
+  const later = useDeferredValue(decided)
+  const laterCell = useDeferredValue(selection?.focus ?? null)
+
+  const onPreview = useCallback((list: readonly number[]) => setPreview(new Set(list)), [])
+  const closePanel = () => {
+    setPanel(null)
+    setPreview(new Set())
+  }
 
   const onKey = (event: KeyboardEvent) => {
-    const key = event.key.toLowerCase()
-    if (event.ctrlKey || event.metaKey) {
-      if (key === 'z' && mayDecide) {
-        event.preventDefault()
-        if (event.shiftKey) decisions.redo()
-        else decisions.undo()
-      } else if (key === 'y' && mayDecide) decisions.redo()
-      return
+    const chosen = event.altKey ? views[Number(event.code.replace('Digit', '')) - 1] : undefined
+    if (chosen) {
+      event.preventDefault()
+      setView(chosen)
     }
-    const chosen = views[Number(key) - 1]
-    if (chosen) setView(chosen)
-    if (!mayDecide || cells.length === 0) return
-    if (key === 'a')
-      decisions.decide(
-        cells.filter((cell) => hasEvidence(proposal.surface, cell)).map((cell) => ({ cell, decision: 'accepted' })),
-      )
-    if (key === 'k') decisions.decide(cells.map((cell) => ({ cell, decision: 'kept' })))
-    if (key === 'p') decisions.decide(cells.map((cell) => ({ cell, decision: 'pinned' })))
-    if (key === 'h') {
+    if (!mayDecide || cells.length === 0 || event.altKey || event.ctrlKey || event.metaKey) return
+    const key = event.key.toLowerCase()
+    const decision = ({ a: 'accepted', k: 'kept', p: 'pinned' } as const)[key]
+    if (decision) decisions.decide(decideAll(decided, cells, decision))
+    if (key === 'h' && cells.some((cell) => decided.decisions[cell] !== 'pinned')) {
       event.preventDefault()
       setHandOpen(true)
     }
@@ -108,7 +110,7 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
         {mayDecide ? (
           <div className="ml-auto flex flex-wrap items-center gap-3 phone:ml-0">
             <span role="status" className="text-small text-ink-faint">
-              {decisions.pending ? 'Saving…' : 'Saved'}
+              {decisions.offline ? 'Kept on this device' : decisions.pending ? 'Saving…' : 'Saved'}
             </span>
             <Button
               aria-label="Undo"
@@ -122,7 +124,7 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
               onClick={decisions.redo}
               icon={<Redo2 size={16} strokeWidth={1.75} aria-hidden />}
             />
-            <Button onClick={() => setPanel(panel === 'rule' ? null : 'rule')}>Accept by rule</Button>
+            <Button onClick={() => setPanel(panel === 'rule' ? null : 'rule')}>Decide by rule</Button>
             <Button onClick={() => setPanel(panel === 'revision' ? null : 'revision')}>Make a revision</Button>
           </div>
         ) : null}
@@ -134,9 +136,9 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
           <TextLink to={paths.carryOver(vehicleId, proposal.id)}>See what has moved and carry it over</TextLink>
         </Banner>
       ) : null}
-      {decisions.problem ? <Banner title={decisions.problem.message}>The page shows what is stored.</Banner> : null}
-      <div className="mt-6 grid gap-x-8 gap-y-6 laptop:grid-cols-[minmax(0,1fr)_var(--leaf-margin)] desk:grid-cols-[var(--leaf-rail)_minmax(0,1fr)_var(--leaf-margin)]">
-        <div className="order-3 laptop:order-none laptop:col-start-1 desk:border-r desk:border-rule desk:pr-6">
+      <DecisionTrouble decisions={decisions} />
+      <div className="mt-6 grid gap-x-8 gap-y-6 laptop:grid-cols-[minmax(0,1fr)_var(--leaf-margin)] laptop:grid-rows-[auto_auto_1fr] desk:grid-rows-[auto_1fr] desk:grid-cols-[var(--leaf-rail)_minmax(0,1fr)_var(--leaf-margin)]">
+        <div className="order-3 laptop:order-none laptop:col-start-1 desk:row-span-2 desk:row-start-1 desk:border-r desk:border-rule desk:pr-6">
           <LogsRail proposal={proposal} vehicleId={vehicleId} maySwitch={mayDecide && !decisions.pending} />
           {proposal.surface.diagnoses.map((diagnosis) => (
             <div key={diagnosis.kind} className="mt-5">
@@ -152,20 +154,17 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
             </ButtonLink>
           </p>
         </div>
-        <section aria-label="Fuel table" className="min-w-0 laptop:col-start-1 desk:col-start-2">
+        <section aria-label="Fuel table" className="min-w-0 laptop:col-start-1 desk:col-start-2 desk:row-start-1">
           {panel === 'rule' ? (
-            <AcceptByRule
+            <DecideByRule
               decided={decided}
-              onPreview={(list) => setPreview(new Set(list))}
-              onAccept={(list) => {
-                decisions.decide(list.map((cell) => ({ cell, decision: 'accepted' })))
-                setPanel(null)
-                setPreview(new Set())
+              selected={cells}
+              onPreview={onPreview}
+              onDecide={(action, list) => {
+                decisions.decide(decideAll(decided, list, action))
+                closePanel()
               }}
-              onClose={() => {
-                setPanel(null)
-                setPreview(new Set())
-              }}
+              onClose={closePanel}
             />
           ) : null}
           {panel === 'revision' ? (
@@ -177,20 +176,13 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
               onClose={() => setPanel(null)}
             />
           ) : null}
-          <ViewChoice view={view} onChange={setView} />
-          <Heatmap
-            label={`${viewName[view]}, ${viewUnit[view]}`}
-            grid={grid}
-            values={proposal.surface.current.map((_, cell) => viewValue(decided, view, cell))}
-            view={viewScale[view]}
-            format={(value) =>
-              viewScale[view] === 'change' || viewScale[view] === 'misfit'
-                ? formatSigned(value, 1)
-                : formatNumber(value, 1)
-            }
-            none={(cell) => !hasEvidence(proposal.surface, cell) && cellState(decided, cell) === 'none'}
-            mark={(cell) => markOf(decided, cell)}
-            evidenceS={proposal.surface.evidenceS}
+          <FuelTable
+            decided={decided}
+            mayDecide={mayDecide}
+            view={view}
+            onView={setView}
+            second={second}
+            onSecond={setSecond}
             selection={selection}
             onSelect={(next) => {
               setSelection(next)
@@ -198,7 +190,9 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
             }}
             preview={preview}
             onKey={onKey}
-            cellLabel={(cell) => labelOf(proposal.surface, decided, view, cell)}
+            onDecide={decisions.decide}
+            onUndo={decisions.undo}
+            onRedo={decisions.redo}
           />
           {selection ? (
             <NearCells
@@ -208,12 +202,37 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
               onSelect={(cell) => setSelection({ anchor: cell, focus: cell })}
             />
           ) : null}
-          <Legend view={viewScale[view]} unit={viewUnit[view]} marks />
-          <TallyRow decided={decided} revisionNumber={proposal.base.number + 1} />
         </section>
-        <div className="laptop:col-start-2 laptop:row-span-2 laptop:row-start-1 desk:col-start-3">
+        <div className="order-2 min-w-0 laptop:order-none laptop:col-start-1 desk:col-start-2 desk:row-start-2">
+          <TallyRow decided={later} revisionNumber={proposal.base.number + 1} />
+          <Summary decided={later} vehicleId={vehicleId} />
+          {laterCell !== null ? (
+            <Suspense fallback={<div className="h-[17.5rem]" />}>
+              <Profile decided={later} cell={laterCell} />
+            </Suspense>
+          ) : null}
+          <section aria-label="Replay" className="mt-7 border-t border-ink pt-3.5">
+            <div className="mb-3 flex flex-wrap items-baseline gap-x-4">
+              <h2 className="font-semibold">Replay a drive</h2>
+              <Button
+                variant="word"
+                aria-expanded={replay === 'open'}
+                onClick={() => setReplay(replay === 'open' ? 'closed' : 'open')}
+              >
+                {replay === 'open' ? 'Put it away' : 'Show what it would have read'}
+              </Button>
+            </div>
+            {replay === 'open' ? (
+              <Suspense fallback={null}>
+                <ReplayPanel proposal={proposal} />
+              </Suspense>
+            ) : null}
+          </section>
+        </div>
+        <div className="order-1 laptop:order-none laptop:col-start-2 laptop:row-span-3 laptop:row-start-1 desk:col-start-3 desk:row-span-2">
           {selection ? (
             <CellCard
+              proposal={proposal}
               decided={decided}
               cell={selection.focus}
               cells={cells}
@@ -226,7 +245,11 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
           )}
           {proposal.surface.held.length > 0 ? (
             <div className="mt-7">
-              <Note icon="caution" kind="caution" head={`${proposal.surface.held.length} cells held at high load`}>
+              <Note
+                icon="caution"
+                kind="caution"
+                head={`${proposal.surface.held.length} ${proposal.surface.held.length === 1 ? 'cell' : 'cells'} held at high load`}
+              >
                 <p>
                   Less fuel at high load is taken only as far as the evidence carries it. More seconds in those cells
                   would release them.
@@ -248,13 +271,29 @@ export function WorkbenchOpen({ proposal, vehicleId }: WorkbenchOpenProps) {
   )
 }
 
-function labelOf(surface: Surface, decided: Decided, view: View, cell: number): string {
-  const cols = surface.grid.rpm.length
-  const value = viewValue(decided, view, cell)
-  const state = cellState(decided, cell)
-  const words =
-    state === 'none'
-      ? 'no evidence'
-      : `${formatNumber(surface.evidenceS[cell] ?? 0, 1)} seconds of evidence, ${state.replace('-', ' ')}`
-  return `${surface.grid.rpm[cell % cols]} rpm, ${surface.grid.mapKpa[Math.floor(cell / cols)]} kPa: ${value === null ? 'none' : formatNumber(value, 1)}, ${words}`
+/** What went wrong with storing decisions, and what can be done about it. */
+function DecisionTrouble({ decisions }: { decisions: Decisions }) {
+  const { offline, problem, refused, sendRefused, dropRefused } = decisions
+  if (offline) {
+    return (
+      <Banner title="No connection">
+        What you decided is kept on this device and sent when the connection returns. Do not sign until then.
+      </Banner>
+    )
+  }
+  if (refused.length > 0) {
+    return (
+      <Banner title={problem?.message ?? 'Somebody decided cells of this proposal meanwhile.'}>
+        <p>
+          The page shows what is stored. {formatNumber(refused.length)}{' '}
+          {refused.length === 1 ? 'decision of yours is' : 'decisions of yours are'} kept here and not stored.
+        </p>
+        <div className="mt-2 flex gap-3">
+          <Button onClick={sendRefused}>Decide them again, on top</Button>
+          <Button onClick={dropRefused}>Drop them</Button>
+        </div>
+      </Banner>
+    )
+  }
+  return problem ? <Banner title={problem.message}>The page shows what is stored.</Banner> : null
 }

@@ -1,19 +1,15 @@
 /** The table of cells: a real grid with headers, arrow keys and ranges; load rises upward, speed runs to the right. */
-import { Equal, Pencil, Pin, Shield } from 'lucide-react'
-import { useRef, type KeyboardEvent } from 'react'
+import { useMemo, useRef, type ClipboardEventHandler, type KeyboardEvent, type MouseEvent, type ReactNode } from 'react'
 import type { Grid } from '../../../shared/grid.ts'
+import { Cell, type HeatmapMark } from './cell.tsx'
 import { familyOf, toneOf, type HeatmapView } from './scale.ts'
+import { cellAfter, cellsOf, columnOf, everything, rowOf, type Selection } from './selection.ts'
 
+export type { HeatmapMark } from './cell.tsx'
 export type { HeatmapView } from './scale.ts'
-export type HeatmapMark = 'open' | 'held' | 'pinned' | 'by-hand' | 'kept'
+export { cellsOf, type Selection } from './selection.ts'
 
-/** A rectangle of cells from anchor to focus; the focus is the cell spoken of. */
-export interface Selection {
-  readonly anchor: number
-  readonly focus: number
-}
-
-interface HeatmapProps {
+export interface HeatmapProps {
   readonly label: string
   readonly grid: Grid
   readonly values: readonly (number | null)[]
@@ -32,78 +28,61 @@ interface HeatmapProps {
   readonly preview?: ReadonlySet<number>
   /** Keys the grid itself does not use. */
   readonly onKey?: (event: KeyboardEvent) => void
+  /** What is being typed into the focused cell. */
+  readonly entry?: ReactNode
+  readonly onCopy?: ClipboardEventHandler
+  readonly onPaste?: ClipboardEventHandler
+  readonly onDoubleClick?: () => void
   readonly snug?: boolean
-}
-
-/** The cells of a selection's rectangle, ascending. */
-export function cellsOf(grid: Grid, { anchor, focus }: Selection): number[] {
-  const cols = grid.rpm.length
-  const [r1, r2] = [Math.floor(anchor / cols), Math.floor(focus / cols)].sort((a, b) => a - b) as [number, number]
-  const [c1, c2] = [anchor % cols, focus % cols].sort((a, b) => a - b) as [number, number]
-  const cells: number[] = []
-  for (let row = r1; row <= r2; row += 1) for (let col = c1; col <= c2; col += 1) cells.push(row * cols + col)
-  return cells
-}
-
-const steps: Record<string, [row: number, col: number]> = {
-  ArrowUp: [1, 0],
-  ArrowDown: [-1, 0],
-  ArrowRight: [0, 1],
-  ArrowLeft: [0, -1],
-  PageUp: [4, 0],
-  PageDown: [-4, 0],
-}
-
-/** Where a key leads, or null when it leads nowhere. */
-export function cellAfter(grid: Grid, cell: number, key: string, ctrl: boolean): number | null {
-  const cols = grid.rpm.length
-  const rows = grid.mapKpa.length
-  const row = Math.floor(cell / cols)
-  const col = cell % cols
-  if (key === 'Home') return ctrl ? (rows - 1) * cols : row * cols
-  if (key === 'End') return ctrl ? cols - 1 : row * cols + cols - 1
-  const step = steps[key]
-  if (!step) return null
-  const clamp = (value: number, high: number) => Math.min(high, Math.max(0, value))
-  return clamp(row + step[0], rows - 1) * cols + clamp(col + step[1], cols - 1)
-}
-
-const icon = { size: 11, strokeWidth: 2.25, 'aria-hidden': true, className: 'mk absolute top-1 left-1' } as const
-
-function Mark({ mark }: { mark: HeatmapMark | null }) {
-  if (mark === 'open')
-    return <i aria-hidden className="mk absolute top-[5px] left-[5px] size-[7px] border-[1.5px] border-current" />
-  if (mark === 'held') return <Shield {...icon} />
-  if (mark === 'pinned') return <Pin {...icon} />
-  if (mark === 'by-hand') return <Pencil {...icon} />
-  if (mark === 'kept') return <Equal {...icon} />
-  return null
 }
 
 /** Width of the evidence rule, %: logarithmic, full at 100 s. */
 const ruleWidth = (seconds: number): number =>
-  Math.min(100, Math.max(6, (100 * Math.log10(1 + seconds)) / Math.log10(101)))
+  seconds > 0 ? Math.min(100, Math.max(6, (100 * Math.log10(1 + seconds)) / Math.log10(101))) : 0
+
+const cellUnder = (event: MouseEvent): number | null => {
+  const found = (event.target as Element).closest<HTMLElement>('[data-cell]')
+  return found ? Number(found.dataset['cell']) : null
+}
+
+/** The selection a key asks for; null where the grid has no use for the key. */
+function selectionAfter(grid: Grid, selection: Selection | null, event: KeyboardEvent): Selection | null {
+  const focus = selection?.focus ?? 0
+  const ctrl = event.ctrlKey || event.metaKey
+  if (ctrl && event.key === 'a') return everything(grid)
+  if (event.key === ' ' && ctrl) return columnOf(grid, focus % grid.rpm.length)
+  if (event.key === ' ' && event.shiftKey) return rowOf(grid, Math.floor(focus / grid.rpm.length))
+  const next = cellAfter(grid, focus, event.key, ctrl)
+  return next === null ? null : { anchor: event.shiftKey ? (selection?.anchor ?? focus) : next, focus: next }
+}
 
 export function Heatmap(props: HeatmapProps) {
   const { grid, selection, onSelect, onKey, snug = false } = props
   const table = useRef<HTMLTableElement>(null)
   const cols = grid.rpm.length
-  const selected = new Set(selection ? cellsOf(grid, selection) : [])
   const focus = selection?.focus ?? 0
-  const focusCell = (cell: number) => table.current?.querySelector<HTMLElement>(`[data-cell="${cell}"]`)?.focus()
 
+  const select = (next: Selection) => {
+    // First the focus, which may select on its own, then what was asked for.
+    table.current?.querySelector<HTMLElement>(`[data-cell="${next.focus}"]`)?.focus()
+    onSelect(next)
+  }
   const onKeyDown = (event: KeyboardEvent<HTMLTableElement>) => {
-    const next = cellAfter(grid, focus, event.key, event.ctrlKey || event.metaKey)
-    if (next !== null) {
+    const next = selectionAfter(grid, selection, event)
+    if (next) {
       event.preventDefault()
-      // First the focus, which may select on its own, then what the key means.
-      focusCell(next)
-      onSelect({ anchor: event.shiftKey ? (selection?.anchor ?? focus) : next, focus: next })
+      select(next)
     } else if (event.key === 'Escape') onSelect(null)
-    else if (event.key === 'a' && (event.ctrlKey || event.metaKey)) {
-      event.preventDefault()
-      onSelect({ anchor: 0, focus: cols * grid.mapKpa.length - 1 })
-    } else onKey?.(event)
+    else onKey?.(event)
+  }
+  const onMouseDown = (event: MouseEvent) => {
+    const cell = cellUnder(event)
+    if (cell === null || event.button !== 0) return
+    onSelect({ anchor: event.shiftKey ? (selection?.anchor ?? cell) : cell, focus: cell })
+  }
+  const onMouseOver = (event: MouseEvent) => {
+    const cell = cellUnder(event)
+    if (cell !== null && event.buttons === 1 && selection && cell !== focus) select({ ...selection, focus: cell })
   }
 
   return (
@@ -114,97 +93,91 @@ export function Heatmap(props: HeatmapProps) {
       aria-multiselectable
       className={`map ${snug ? 'snug' : ''}`}
       onKeyDown={onKeyDown}
+      onMouseDown={onMouseDown}
+      onMouseOver={onMouseOver}
+      onFocus={(event) => {
+        const cell = (event.target as HTMLElement).dataset['cell']
+        if (!selection && cell !== undefined) onSelect({ anchor: Number(cell), focus: Number(cell) })
+      }}
+      onCopy={props.onCopy}
+      onPaste={props.onPaste}
+      onDoubleClick={props.onDoubleClick}
     >
       <thead>
         <tr>
-          <th scope="col">{snug ? 'kPa, rpm' : 'rpm'}</th>
+          <th scope="col" className="cursor-pointer select-none" onClick={() => select(everything(grid))}>
+            {snug ? 'kPa, rpm' : 'rpm'}
+          </th>
           {grid.rpm.map((rpm, col) => (
-            <th key={rpm} scope="col" className={selection && focus % cols === col ? 'font-semibold text-ink' : ''}>
+            <th
+              key={rpm}
+              scope="col"
+              onClick={() => select(columnOf(grid, col))}
+              className={`cursor-pointer select-none ${selection && focus % cols === col ? 'font-semibold text-ink' : ''}`}
+            >
               {rpm}
             </th>
           ))}
         </tr>
       </thead>
-      <tbody>
-        {grid.mapKpa
-          .map((mapKpa, row) => (
-            <tr key={mapKpa}>
-              <th scope="row" className={selection && Math.floor(focus / cols) === row ? 'font-semibold text-ink' : ''}>
-                {row === grid.mapKpa.length - 1 ? (
-                  <span className={snug ? 'sr-only' : 'block text-ink-faint phone:sr-only'}>kPa</span>
-                ) : null}
-                {mapKpa}
-              </th>
-              {grid.rpm.map((rpm, col) => (
-                <Cell
-                  key={rpm}
-                  {...props}
-                  cell={row * cols + col}
-                  selected={selected.has(row * cols + col)}
-                  tabbable={focus === row * cols + col}
-                />
-              ))}
-            </tr>
-          ))
-          .toReversed()}
-      </tbody>
+      <Rows {...props} onRow={(row) => select(rowOf(grid, row))} />
     </table>
   )
 }
 
-function Cell(props: HeatmapProps & { cell: number; selected: boolean; tabbable: boolean }) {
-  const {
-    cell,
-    values,
-    view,
-    format,
-    formatNarrow,
-    none,
-    mark,
-    evidenceS,
-    selection,
-    onSelect,
-    cellLabel,
-    preview,
-    selected,
-    tabbable,
-  } = props
-  const value = values[cell] ?? null
-  const unknown = none(cell)
-  const tone = unknown ? null : toneOf(view, value)
-  const name = tone === null ? null : `${familyOf(view)}-${tone}`
-  const seconds = evidenceS?.[cell] ?? 0
+function Rows(props: HeatmapProps & { onRow: (row: number) => void }) {
+  const { grid, values, view, selection, snug = false } = props
+  const cols = grid.rpm.length
+  const selected = new Set(selection ? cellsOf(grid, selection) : [])
+  const focus = selection?.focus ?? 0
+  const { format, formatNarrow, none, mark, evidenceS, cellLabel } = props
+  // A move of the cursor changes none of this; a page that keeps its functions is spared writing every cell anew.
+  const written = useMemo(() => {
+    const family = familyOf(view)
+    return values.map((value, cell) => {
+      const tone = none(cell) ? null : toneOf(view, value)
+      return {
+        text: value === null ? null : format(value),
+        narrow: value === null || !formatNarrow ? null : formatNarrow(value),
+        label: cellLabel(cell),
+        tone: tone === null ? null : `${family}-${tone}`,
+        mark: mark?.(cell) ?? null,
+        rule: ruleWidth(evidenceS?.[cell] ?? 0),
+      }
+    })
+  }, [values, view, format, formatNarrow, none, mark, evidenceS, cellLabel])
+  const cellOf = (cell: number) => {
+    return (
+      <Cell
+        key={cell}
+        cell={cell}
+        {...written[cell]!}
+        selected={selected.has(cell)}
+        tabbable={focus === cell}
+        preview={props.preview?.has(cell) ?? false}
+        entry={focus === cell ? props.entry : undefined}
+      />
+    )
+  }
   return (
-    <td
-      role="gridcell"
-      data-cell={cell}
-      tabIndex={tabbable ? 0 : -1}
-      aria-selected={selected}
-      aria-label={cellLabel(cell)}
-      className={`cell ${unknown ? 'none' : ''} ${preview?.has(cell) ? 'preview' : ''}`}
-      style={name ? { background: `var(--color-${name})`, color: `var(--color-on-${name})` } : undefined}
-      onMouseDown={(event) => onSelect({ anchor: event.shiftKey ? (selection?.anchor ?? cell) : cell, focus: cell })}
-      onMouseEnter={(event) => {
-        if (event.buttons === 1 && selection) onSelect({ anchor: selection.anchor, focus: cell })
-      }}
-      onFocus={() => {
-        if (!selection) onSelect({ anchor: cell, focus: cell })
-      }}
-    >
-      <Mark mark={mark?.(cell) ?? null} />
-      {value === null ? null : (
-        <>
-          <span className="phone:hidden">{format(value)}</span>
-          {formatNarrow ? <span className="hidden phone:inline">{formatNarrow(value)}</span> : null}
-        </>
-      )}
-      {seconds > 0 ? (
-        <i
-          aria-hidden
-          className="ev absolute bottom-0 left-0 h-[3px] bg-current opacity-60"
-          style={{ width: `${ruleWidth(seconds)}%` }}
-        />
-      ) : null}
-    </td>
+    <tbody>
+      {grid.mapKpa
+        .map((mapKpa, row) => (
+          <tr key={mapKpa}>
+            <th
+              scope="row"
+              onClick={() => props.onRow(row)}
+              className={`cursor-pointer select-none ${selection && Math.floor(focus / cols) === row ? 'font-semibold text-ink' : ''}`}
+            >
+              {row === grid.mapKpa.length - 1 ? (
+                <span className={snug ? 'sr-only' : 'block text-ink-faint phone:sr-only'}>kPa</span>
+              ) : null}
+              {mapKpa}
+            </th>
+            {grid.rpm.map((_, col) => cellOf(row * cols + col))}
+          </tr>
+        ))
+        .toReversed()}
+    </tbody>
   )
 }

@@ -18,7 +18,10 @@ export const uncertaintyEdges = [0.5, 1, 1.5, 2, 3, 4, 6] as const
 /** Lambda: neutral from 0.98 to 1.02, copper is richer, slate leaner. */
 export const lambdaEdges = [0.78, 0.83, 0.88, 0.93, 0.98, 1.02, 1.06, 1.1, 1.14, 1.18] as const
 
-export type HeatmapView = 'magnitude' | 'change' | 'evidence' | 'uncertainty' | 'misfit' | 'lambda'
+/** Days since the last drive. */
+export const ageEdges = [2, 4, 8, 15, 31, 61, 92, 183, 365, 730] as const
+
+export type HeatmapView = 'magnitude' | 'change' | 'evidence' | 'uncertainty' | 'misfit' | 'lambda' | 'age'
 
 const change = steps(changeEdges)
 const scales: Record<HeatmapView, (value: number) => number> = {
@@ -27,6 +30,7 @@ const scales: Record<HeatmapView, (value: number) => number> = {
   misfit: change,
   evidence: steps(evidenceEdges),
   uncertainty: steps(uncertaintyEdges, [0, 1, 3, 4, 6, 7, 9, 10]),
+  age: steps(ageEdges),
   lambda: steps(lambdaEdges, [10, 9, 8, 7, 6, 5, 4, 3, 2, 1, 0]),
 }
 
@@ -36,6 +40,7 @@ const edges: Record<HeatmapView, readonly number[]> = {
   misfit: changeEdges,
   evidence: evidenceEdges,
   uncertainty: uncertaintyEdges,
+  age: ageEdges,
   lambda: lambdaEdges,
 }
 export const edgesOf = (view: HeatmapView): readonly number[] => edges[view]

@@ -11,7 +11,7 @@ import {
 } from '../../../src/features/proposals/decisions.ts'
 import { sumsOf } from '../../../src/features/vehicles/sums.ts'
 import { formatClock, formatNumber, formatSigned } from '../../../src/lib/format.ts'
-import { cellAfter, cellsOf } from '../../../src/ui/heatmap/heatmap.tsx'
+import { cellAfter, cellsOf } from '../../../src/ui/heatmap/selection.ts'
 import { toneOf } from '../../../src/ui/heatmap/scale.ts'
 
 /** Relative luminance and contrast of WCAG 2.2. */
@@ -139,8 +139,9 @@ const decided: Decided = {
 
 describe('decisions', () => {
   test('a rule takes open cells with enough evidence and a change beyond its doubt, never a held one', () => {
-    expect(cellsByRule(decided, { evidenceS: 5, sigmas: 2 })).toEqual([0])
-    expect(cellsByRule(decided, { evidenceS: 0, sigmas: 0 })).toEqual([0, 1])
+    const rule = { action: 'accepted', mostPct: Infinity, direction: 'either', among: null } as const
+    expect(cellsByRule(decided, { ...rule, evidenceS: 5, sigmas: 2 })).toEqual([0])
+    expect(cellsByRule(decided, { ...rule, evidenceS: 0, sigmas: 0 })).toEqual([0, 1])
   })
 
   test('accepting, setting by hand and undoing add up', () => {
