@@ -29,6 +29,12 @@ function swingOf(view: DriveView, run: Rows): Swing | null {
   while (lag < longest && repeat(lag) > 0) lag += 1
   let best = lag
   for (let at = lag; at <= longest; at += 1) if (repeat(at) > repeat(best)) best = at
+  // Twice the period repeats as well: the first peak that is nearly as high is the period.
+  for (let at = lag + 1; at < best; at += 1)
+    if (repeat(at) > 0.85 * repeat(best) && repeat(at) >= repeat(at - 1) && repeat(at) >= repeat(at + 1)) {
+      best = at
+      break
+    }
   return repeat(best) >= leastRepeat ? { run, periodS: best * view.dtS, amplitudeRpm } : null
 }
 

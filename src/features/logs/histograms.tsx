@@ -7,7 +7,8 @@ const [width, height] = [220, 56]
 
 function Bars({ channel, unit, low, high, seconds }: Histogram) {
   const most = Math.max(...seconds)
-  const step = width / seconds.length
+  // A channel that never moved is one thin bar, not a block.
+  const step = seconds.length === 1 ? 6 : width / seconds.length
   const peak = seconds.indexOf(most)
   const digits = high - low < 5 ? 2 : 0
   const at = low + ((peak + 0.5) * (high - low)) / seconds.length
@@ -43,7 +44,7 @@ function Bars({ channel, unit, low, high, seconds }: Histogram) {
 }
 
 export const Histograms = ({ histograms }: { histograms: readonly Histogram[] }) => (
-  <div className="grid gap-x-8 gap-y-5 [grid-template-columns:repeat(auto-fill,minmax(180px,1fr))]">
+  <div className="grid gap-x-8 gap-y-5 [grid-template-columns:repeat(auto-fill,minmax(150px,1fr))]">
     {histograms.map((each) => (
       <Bars key={each.channel} {...each} />
     ))}
