@@ -25,6 +25,8 @@ export interface SimulationInput {
   readonly leakKgS?: number
   /** Dead time the controller reckons with, less the injectors' own, ms. */
   readonly deadTimeErrorMs?: number
+  /** False: the controller never cuts fuel on overrun. */
+  readonly cutsFuel?: boolean
   /** False takes away noise, drift and the level of the drive: what is left is the physics. */
   readonly noisy?: boolean
 }
@@ -86,7 +88,7 @@ export function simulate(input: SimulationInput): SimulatedLog {
     const accel = Math.max(0, Math.min(0.3, (mapKpa - before.mapKpa - 6) * 0.012))
     const wanted = valueAt(input.target.grid, input.target.lambda, rpm, mapSeen)
     cutFor = overrun && rpm > engine.idleRpm + 350 ? cutFor + stepS : 0
-    const cut = cutFor > 0.3
+    const cut = input.cutsFuel !== false && cutFor > 0.3
     const ve = valueAt(input.flashed.grid, input.flashed.ve, rpm, mapSeen)
     const perCycle = (mapKpa * engine.displacementL) / (gasConstantAir * (iatTrue + 273.15)) / engine.cylinders
     const airTrueMg = (engine.trueVe(rpm, mapKpa) / 100) * perCycle * 1e6

@@ -3,6 +3,8 @@ import { MessageChannel } from 'node:worker_threads'
 import { Piscina } from 'piscina'
 import type { LogReading } from '../core/csv/read-log.ts'
 import type { CellSample } from '../core/cell-samples.ts'
+import type { InspectionInput } from '../core/findings/inspect.ts'
+import type { Inspection } from '../../shared/contract/logs.ts'
 import type { Ground, LearnResult } from '../core/learn.ts'
 import type { MixturePath } from '../core/model/path.ts'
 import type { Replay, ReplayInput } from '../core/replay.ts'
@@ -25,6 +27,8 @@ export interface Crunch {
   readonly samplesOfCell: (
     input: LogGround & { fitted: Float64Array; path: MixturePath; cell: number; most: number },
   ) => Promise<CellSample[]>
+  /** Looks over a whole log for what the engine and its sensors did wrong. */
+  readonly inspectLog: (input: InspectionInput) => Promise<Inspection>
   readonly close: () => Promise<void>
 }
 
@@ -59,6 +63,7 @@ export function openCrunch(): Crunch {
     addUpLogs: (memories, ground) => pool.run({ memories, ground }, { name: 'addUpLogs' }) as Promise<LearnResult>,
     replayDrive: (input) => pool.run(input, { name: 'replayDrive' }) as Promise<Replay>,
     samplesOfCell: (input) => pool.run(input, { name: 'samplesOfCell' }) as Promise<CellSample[]>,
+    inspectLog: (input) => pool.run(input, { name: 'inspectLog' }) as Promise<Inspection>,
     close: () => pool.destroy(),
   }
 }

@@ -12,4 +12,5 @@ export const {
   addUpLogs,
   replayDrive,
   samplesOfCell,
+  inspectLog,
 } = work

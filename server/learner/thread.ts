@@ -9,6 +9,7 @@ import type { Grid } from '../../shared/grid.ts'
 import { cellSamples, type CellSample } from '../core/cell-samples.ts'
 import type { Drive, EngineFacts } from '../core/drive.ts'
 import type { LearnRefusal } from '../core/evidence/refuse.ts'
+import { inspect, type InspectionInput } from '../core/findings/inspect.ts'
 import { priorParts } from '../core/fit/prior.ts'
 import { learnFrom, type Ground, type LearnResult } from '../core/learn.ts'
 import { relinearise, rememberLog, type LogMemory } from '../core/log-memory.ts'
@@ -75,3 +76,5 @@ export const replayDrive = (input: ReplayInput): Replay => replay(input)
 export const samplesOfCell = (
   input: LogGround & { fitted: Float64Array; path: MixturePath; cell: number; most: number },
 ): CellSample[] => cellSamples(input.drive, input.engine, input.grid, input.fitted, input.path, input.cell, input.most)
+
+export const inspectLog = (input: InspectionInput) => inspect(input)

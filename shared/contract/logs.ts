@@ -2,7 +2,7 @@
 import { z } from 'zod'
 import { endpoint } from '../endpoint.ts'
 import { logStates } from '../lifecycle.ts'
-import { Done, Id, Instant, Numbers } from '../wire.ts'
+import { Done, GridShape, Id, Instant, Numbers } from '../wire.ts'
 import { VehicleRef } from './vehicles.ts'
 
 /** Channels that Evenburn knows; a column may also be left unused. */
@@ -102,6 +102,65 @@ export const Trace = z.object({
 })
 export type Trace = z.infer<typeof Trace>
 
+export const findingKinds = [
+  'stall',
+  'hunting',
+  'rich-surge',
+  'tip-in',
+  'lean-load',
+  'rich-load',
+  'cut-missing',
+  'cut-stays',
+  'closed-loop',
+  'dropouts',
+  'misfire',
+  'warm-up',
+  'heat-soak',
+  'leak',
+  'dead-time',
+] as const
+
+/** Seconds from the start of the log. */
+export const Stretch = z.object({ fromS: z.number(), toS: z.number() })
+export type Stretch = z.infer<typeof Stretch>
+
+/** Where the engine misbehaved: what was seen, and what it usually means by common practice. */
+export const Finding = z.object({
+  kind: z.enum(findingKinds),
+  /** stop: do not drive it so; look: wants mending; note: good to know. */
+  urgency: z.enum(['stop', 'look', 'note']),
+  title: z.string(),
+  usually: z.string(),
+  times: z.number().int(),
+  /** In the order of time, at most twenty. */
+  stretches: z.array(Stretch),
+  numbers: z.array(z.object({ label: z.string(), value: z.number(), unit: z.string() })),
+  /** Cells of the inspection's grid it happened in, the most visited first. */
+  cells: z.array(z.number().int()),
+})
+export type Finding = z.infer<typeof Finding>
+
+export const Histogram = z.object({
+  channel: ChannelName,
+  unit: z.string(),
+  low: z.number(),
+  high: z.number(),
+  /** Seconds in each of equally wide bins from low to high. */
+  seconds: z.array(z.number()),
+})
+export type Histogram = z.infer<typeof Histogram>
+
+/** What is worked out from the whole log at once. */
+export const Inspection = z.object({
+  findings: z.array(Finding),
+  /** Stretches that cannot teach, with their reason; null where no fuel table is known that was in the engine. */
+  leftOut: z.array(Stretch.extend({ reason: z.string() })).nullable(),
+  /** Seconds that the drive spent nearest to each cell of the fuel table. */
+  path: z.object({ grid: GridShape, seconds: z.array(z.number()) }).nullable(),
+  histograms: z.array(Histogram),
+})
+export type Inspection = z.infer<typeof Inspection>
+
 export const uploadLog = endpoint({
   method: 'POST',
   path: '/api/vehicles/:vehicleId/logs',
@@ -183,6 +242,14 @@ export const getTraces = endpoint({
     points: z.coerce.number().int().min(10).max(4000).default(1000),
   }),
   response: z.object({ traces: z.array(Trace) }),
+})
+export const inspectLog = endpoint({
+  method: 'GET',
+  path: '/api/logs/:logId/inspection',
+  access: 'log:read',
+  summary: 'Findings, stretches that cannot teach, time spent in each cell, and a histogram of every channel',
+  params: LogRef,
+  response: Inspection,
 })
 export const downloadLog = endpoint({
   method: 'GET',

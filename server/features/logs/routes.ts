@@ -2,6 +2,7 @@
 import * as contract from '../../../shared/contract/logs.ts'
 import type { Deps } from '../../deps.ts'
 import { on, type Binder } from '../../platform/http/on.ts'
+import { inspectLog } from './inspection.ts'
 import * as logs from './service.ts'
 
 export function mountLogs(binder: Binder, deps: Deps): void {
@@ -23,6 +24,7 @@ export function mountLogs(binder: Binder, deps: Deps): void {
   )(async ({ actor, params, query }) => ({
     traces: await logs.getTraces(deps, actor, params.logId, query),
   }))
+  on(binder, contract.inspectLog)(({ actor, params }) => inspectLog(deps, actor, params.logId))
   on(binder, contract.downloadLog)(({ actor, params }) => logs.downloadLog(deps, actor, params.logId))
   on(
     binder,

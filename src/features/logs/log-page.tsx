@@ -19,9 +19,9 @@ import { Progress } from '../../ui/progress.tsx'
 import { Status } from '../../ui/status.tsx'
 import { tableQueries } from '../tables/queries.ts'
 import { channelWords } from './channel-words.ts'
+import { LogLooks } from './log-looks.tsx'
 import { MappingForm } from './mapping-form.tsx'
 import { logQueries, useLogChanges } from './queries.ts'
-import { Traces } from './traces.tsx'
 
 const healthWord = { dead: 'Dead', caution: 'Caution', sound: 'Sound', absent: 'Absent' } as const
 
@@ -58,6 +58,7 @@ export default function LogPage() {
 function LogView({ log, vehicleId }: { log: Log; vehicleId: string }) {
   const mayEdit = useCan('log:upload')
   const changes = useLogChanges(log.id)
+  const dead = log.health.filter(({ state }) => state === 'dead')
   const digits = (value: number | null) =>
     value === null ? '' : formatNumber(value, Math.abs(value) < 10 ? 2 : Math.abs(value) < 100 ? 1 : 0)
   return (
@@ -91,9 +92,13 @@ function LogView({ log, vehicleId }: { log: Log; vehicleId: string }) {
           title="Health"
           note={`${log.health.filter(({ state }) => state === 'dead').length} dead, ${log.health.filter(({ state }) => state === 'caution').length} with a caution`}
           aside={
-            log.health.some(({ channel, state }) => channel === 'iat' && state === 'dead') ? (
+            dead.length > 0 ? (
               <Note icon="caution" kind="caution" head="Mend this before the next drive">
-                <p>Without intake air temperature the air mass is a guess: 5 °C of error moves every cell by 1.7 %.</p>
+                {dead.map(({ channel, remark }) => (
+                  <p key={channel}>
+                    {channelWords[channel]}: {remark}
+                  </p>
+                ))}
               </Note>
             ) : null
           }
@@ -120,11 +125,7 @@ function LogView({ log, vehicleId }: { log: Log; vehicleId: string }) {
           </Ledger>
         </Entry>
       ) : null}
-      {log.channels.includes('time') && log.state === 'ready' ? (
-        <Entry title="Traces" note="lowest and highest readings in each stretch">
-          <Traces log={log} />
-        </Entry>
-      ) : null}
+      {log.channels.includes('time') && log.state === 'ready' ? <LogLooks log={log} /> : null}
       {log.mapping.length > 0 ? (
         <Entry
           title="Columns"

@@ -4,6 +4,7 @@ import {
   changeLog,
   getLog,
   getTraces,
+  inspectLog,
   listLogs,
   mapColumns,
   readLogAgain,
@@ -29,6 +30,12 @@ export const logQueries = {
       queryKey: [...logQueries.all(), 'detail', logId],
       queryFn: ({ signal }) => call(getLog, { params: { logId }, signal }),
       refetchInterval: (query) => (reading(query.state.data?.state) ? 700 : false),
+    }),
+  inspection: (logId: string, version: number) =>
+    queryOptions({
+      queryKey: [...logQueries.all(), 'inspection', logId, version],
+      queryFn: ({ signal }) => call(inspectLog, { params: { logId }, signal }),
+      staleTime: Infinity,
     }),
   traces: (logId: string, channels: readonly ChannelName[], fromS?: number, toS?: number, points = 1000) =>
     queryOptions({

@@ -1,16 +1,16 @@
-/** The traces of a log: chosen channels on one time axis, zoomed by choosing a stretch. */
+/** The traces of a log: chosen channels on one time axis with one cursor; dragging, keys and buttons choose the stretch. */
 import { useQuery } from '@tanstack/react-query'
 import { useEffect, useRef, useState } from 'react'
-import { useSearchParams } from 'react-router-dom'
-import type { ChannelName, Log } from '../../../shared/contract/logs.ts'
-import { formatClock } from '../../lib/format.ts'
+import type { ChannelName, Log, Trace } from '../../../shared/contract/logs.ts'
 import { Banner } from '../../ui/banner.tsx'
-import { Button } from '../../ui/button.tsx'
 import { Checkbox } from '../../ui/field.tsx'
 import { Loading } from '../../ui/loading.tsx'
+import type { Shade } from '../../ui/trace/trace-overlay.tsx'
 import { TracePanel } from '../../ui/trace/trace-panel.tsx'
 import { channelWords } from './channel-words.ts'
+import { ExactValues } from './exact-values.tsx'
 import { logQueries } from './queries.ts'
+import { StretchBar, type StretchShown } from './stretch-bar.tsx'
 
 const usual: readonly ChannelName[] = ['rpm', 'map', 'lambda', 'tp']
 
@@ -28,75 +28,82 @@ function useWidth() {
   return { ref, width }
 }
 
-/** Seconds shown before and after the stretch an address names. */
-const beside = 10
-
-/** The stretch that the address names, with a little before and after; else the whole drive. */
-function stretchAsked(search: URLSearchParams, durationS: number): { from: number; to: number } {
-  const [from, to] = [Number(search.get('from') ?? Number.NaN), Number(search.get('to') ?? Number.NaN)]
-  if (!(from >= 0 && to >= from && from < durationS)) return { from: 0, to: durationS }
-  return { from: Math.max(0, from - beside), to: Math.min(durationS, to + beside) }
+/** Lowest and highest reading of the bucket under the cursor, in words. */
+export function valueAtCursor(trace: Trace, cursorS: number): string {
+  const after = trace.timeS.findIndex((t) => t > cursorS)
+  const i = after < 0 ? trace.timeS.length - 1 : Math.max(0, after - 1)
+  const [low, high] = [trace.low[i] ?? null, trace.high[i] ?? null]
+  if (low === null || high === null) return 'no reading'
+  const unit = trace.unit === 'lambda' ? '' : ` ${trace.unit}`
+  return low === high ? `${low}${unit}` : `${low} to ${high}${unit}`
 }
 
-export function Traces({ log }: { log: Log }) {
+interface TracesProps {
+  readonly log: Log
+  readonly stretch: StretchShown
+  readonly onStretch: (from: number, to: number) => void
+  readonly shades: readonly Shade[]
+  readonly marks: readonly Shade[]
+}
+
+export function Traces({ log, stretch, onStretch, shades, marks }: TracesProps) {
   const [chosen, setChosen] = useState<readonly ChannelName[]>(() =>
     usual.filter((name) => log.channels.includes(name)),
   )
-  const [search] = useSearchParams()
-  const [stretch, setStretch] = useState(() => stretchAsked(search, log.durationS))
+  const [cursorS, setCursorS] = useState<number | null>(null)
   const { ref, width } = useWidth()
   const withTarget: ChannelName[] =
-    chosen.includes('lambda') && log.channels.includes('targetLambda') ? [...chosen, 'targetLambda'] : [...chosen]
+    chosen.includes('lambda') && log.channels.includes('targetLambda') && !chosen.includes('targetLambda')
+      ? [...chosen, 'targetLambda']
+      : [...chosen]
   const traces = useQuery(
     logQueries.traces(log.id, withTarget, stretch.from, stretch.to, Math.max(200, Math.min(2000, Math.round(width)))),
   )
-  const length = stretch.to - stretch.from
-  const show = (from: number, to: number) => setStretch({ from: Math.max(0, from), to: Math.min(log.durationS, to) })
-  const whole = stretch.from <= 0 && stretch.to >= log.durationS
-  const target = traces.data?.traces.find((trace) => trace.channel === 'targetLambda')
+  const shown = traces.data?.traces ?? []
+  const target = shown.find((trace) => trace.channel === 'targetLambda')
+  const cursor = cursorS !== null && cursorS >= stretch.from && cursorS <= stretch.to ? cursorS : null
+  const under = cursor === null ? [] : shades.filter(({ fromS, toS }) => cursor >= fromS && cursor <= toS)
+  const overlay = { ...stretch, shades, marks, cursorS: cursor, onCursor: setCursorS, onStretch }
   return (
     <div>
-      <div className="mb-3 flex flex-wrap items-center gap-2" role="group" aria-label="Stretch of the drive">
-        <Button disabled={stretch.from <= 0} onClick={() => show(stretch.from - length / 2, stretch.to - length / 2)}>
-          Earlier
-        </Button>
-        <Button
-          disabled={stretch.to >= log.durationS}
-          onClick={() => show(stretch.from + length / 2, stretch.to + length / 2)}
-        >
-          Later
-        </Button>
-        <Button disabled={length < 4} onClick={() => show(stretch.from + length / 4, stretch.to - length / 4)}>
-          Closer
-        </Button>
-        <Button disabled={whole} onClick={() => show(stretch.from - length / 2, stretch.to + length / 2)}>
-          Wider
-        </Button>
-        <Button disabled={whole} onClick={() => show(0, log.durationS)}>
-          Whole drive
-        </Button>
-        <span role="status" className="text-ink-faint">
-          {formatClock(stretch.from)} to {formatClock(stretch.to)}
-        </span>
-      </div>
+      <StretchBar
+        stretch={stretch}
+        durationS={log.durationS}
+        onStretch={onStretch}
+        cursorS={cursor}
+        onCursor={setCursorS}
+      />
       <div ref={ref}>
         {traces.isPending || width === 0 ? <Loading what="Fetching the traces" /> : null}
         {traces.isError ? <Banner title={traces.error.message}>Load the page again.</Banner> : null}
         {width > 0
-          ? traces.data?.traces
+          ? shown
               .filter((trace) => trace.channel !== 'targetLambda' || chosen.includes('targetLambda'))
               .map((trace) => (
                 <TracePanel
                   key={trace.channel}
-                  name={channelWords[trace.channel]}
+                  name={
+                    cursor === null
+                      ? channelWords[trace.channel]
+                      : `${channelWords[trace.channel]}: ${valueAtCursor(trace, cursor)}`
+                  }
                   trace={trace}
                   second={trace.channel === 'lambda' ? target : undefined}
                   width={width}
+                  overlay={overlay}
                 />
               ))
           : null}
       </div>
-      {target && chosen.includes('lambda') ? <p className="mt-1 text-small text-copper">Target lambda dashed</p> : null}
+      <p className="mt-1 flex flex-wrap gap-x-6 text-small text-ink-quiet">
+        {target && chosen.includes('lambda') ? <span className="text-copper">Target lambda dashed</span> : null}
+        {shades.length > 0 ? (
+          <span>
+            Hatched: cannot teach{under.length > 0 ? `; here: ${under.map(({ words }) => words).join(', ')}` : ''}
+          </span>
+        ) : null}
+        {marks.length > 0 ? <span>Copper bar: a finding</span> : null}
+      </p>
       <fieldset className="mt-4">
         <legend className="font-semibold">Channels shown</legend>
         <div className="flex flex-wrap gap-x-6">
@@ -114,6 +121,7 @@ export function Traces({ log }: { log: Log }) {
             ))}
         </div>
       </fieldset>
+      <ExactValues traces={shown.filter(({ channel }) => withTarget.includes(channel))} />
     </div>
   )
 }
