@@ -51,6 +51,11 @@ export function judge(
 export const notMeasured = (group: string, name: string, peer: string): void =>
   note({ group, name, value: Number.NaN, unit: 'not measured', peer })
 
+/** A line that is written over by the next: work goes on, nothing is claimed. Only where a person watches. */
+export function progress(text: string): void {
+  if (process.stderr.isTTY) process.stderr.write(`\r\u001b[K${text}`)
+}
+
 export function writeReport(): void {
   mkdirSync('.data', { recursive: true })
   writeFileSync('.data/bench.json', `${JSON.stringify(rows, null, 2)}\n`)
