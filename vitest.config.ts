@@ -12,6 +12,8 @@ export default defineConfig({
           environment: 'node',
           include: ['tests/unit/**/*.test.ts', 'tests/architecture.test.ts'],
           setupFiles: ['tests/support/console-guard.ts'],
+          // Learning a drive takes half a second; a busy machine may take twenty times that.
+          testTimeout: 60_000,
         },
       },
       {

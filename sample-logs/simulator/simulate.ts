@@ -3,15 +3,57 @@
  * Written from the physics; shares nothing with the learner but the grid.
  */
 import { valueAt, type Grid } from '../../shared/grid.ts'
-import { drive, type Habit } from './driver.ts'
+import { drive, type Habit, type Moment } from './driver.ts'
+import { dropouts, filmOnWall, firstOrder, pipe, wander } from './effects.ts'
 import type { SimulatedEngine } from './engine.ts'
-import { seeded } from './random.ts'
+import { seeded, type Random } from './random.ts'
+
+/** What makes readings differ from the physics; each can be put out by itself, the others keep their draws. */
+export interface Disturbances {
+  /** Fuel delivered in this drive against all others, standard deviation of its ln. */
+  readonly levelSd: number
+  /** Slow wander of the fuel delivered, ln. */
+  readonly drift: { readonly sd: number; readonly tauS: number }
+  /** Amplitude that the strokes leave on the pressure signal, kPa. */
+  readonly pulsationKpa: number
+  /** Standard deviations of single readings. */
+  readonly mapSdKpa: number
+  readonly rpmSd: number
+  readonly lambdaSd: number
+  /** Spells a minute in which the wideband says nothing and its column reads 0. */
+  readonly dropoutsPerMin: number
+  /** Readings are written with the places their channel has; false writes all of them. */
+  readonly isQuantised: boolean
+}
+
+export const usualDisturbances: Disturbances = {
+  levelSd: 0.005,
+  drift: { sd: 0.007, tauS: 40 },
+  pulsationKpa: 0.28,
+  mapSdKpa: 0.25,
+  rpmSd: 4,
+  lambdaSd: 0.006,
+  dropoutsPerMin: 0,
+  isQuantised: true,
+}
+
+/** The physics alone, and the places of the channels. */
+export const undisturbed: Disturbances = {
+  ...usualDisturbances,
+  levelSd: 0,
+  drift: { sd: 0, tauS: 40 },
+  pulsationKpa: 0,
+  mapSdKpa: 0,
+  rpmSd: 0,
+  lambdaSd: 0,
+}
 
 export interface SimulationInput {
   readonly engine: SimulatedEngine
   readonly flashed: { readonly grid: Grid; readonly ve: ArrayLike<number> }
   readonly target: { readonly grid: Grid; readonly lambda: ArrayLike<number> }
-  readonly habit: Habit
+  /** Who drives; or the moments themselves, one every 10 ms. */
+  readonly habit: Habit | readonly Moment[]
   readonly seconds: number
   readonly rateHz: number
   readonly seed: number
@@ -27,8 +69,8 @@ export interface SimulationInput {
   readonly deadTimeErrorMs?: number
   /** False: the controller never cuts fuel on overrun. */
   readonly cutsFuel?: boolean
-  /** False takes away noise, drift and the level of the drive: what is left is the physics. */
-  readonly noisy?: boolean
+  /** What differs from the usual ones. */
+  readonly disturbances?: Partial<Disturbances>
 }
 
 /** Column title to readings, all the same length. */
@@ -37,93 +79,81 @@ export type SimulatedLog = Readonly<Record<string, readonly number[]>>
 const gasConstantAir = 287.05
 const stepS = 0.01
 
-/** Linear interpolation into a history by a quantity that only grows; the pointer only moves forward. */
-function delayed(
-  grown: readonly number[],
-  values: readonly number[],
-  wanted: number,
-  from: number,
-): { value: number; at: number } {
-  let at = from
-  while (at + 1 < grown.length - 1 && grown[at + 1]! <= wanted) at += 1
-  const span = grown[at + 1]! - grown[at]!
-  const share = span > 0 ? Math.min(1, Math.max(0, (wanted - grown[at]!) / span)) : 0
-  return { value: values[at]! + share * ((values[at + 1] ?? values[at]!) - values[at]!), at }
+/** Air of one cylinder and cycle at a VE, mg (ideal gas law). */
+const fillingMg = (engine: SimulatedEngine, vePct: number, mapKpa: number, intakeC: number): number =>
+  (vePct / 100) * ((mapKpa * engine.displacementL) / (gasConstantAir * (intakeC + 273.15)) / engine.cylinders) * 1e6
+
+function momentsOf(input: SimulationInput, random: Random): readonly Moment[] {
+  const { habit, engine, seconds, hunting } = input
+  return typeof habit === 'string'
+    ? drive(engine, habit, seconds, stepS, hunting ?? 0, random)
+    : habit.slice(0, Math.round(seconds / stepS))
+}
+
+/** Corrections on top of the table, as factors less 1. */
+function enrichments(moments: readonly Moment[], n: number, ect: number) {
+  const before = moments[Math.max(0, n - 12)]!
+  return {
+    warm: Math.max(0, (70 - ect) * 0.0045),
+    after: Math.max(0, 0.25 * (1 - (n * stepS) / 20)),
+    accel: Math.max(0, Math.min(0.3, (moments[n]!.mapKpa - before.mapKpa - 6) * 0.012)),
+  }
 }
 
 export function simulate(input: SimulationInput): SimulatedLog {
   const { engine } = input
   const random = seeded(input.seed)
-  const moments = drive(engine, input.habit, input.seconds, stepS, input.hunting ?? 0, random)
+  const moments = momentsOf(input, random)
+  const disturbed = { ...usualDisturbances, ...input.disturbances }
   const rows: Record<string, number[]> = {}
   const write = (title: string, value: number, places: number) => {
     rows[title] ??= []
-    rows[title].push(Number(value.toFixed(places)))
+    rows[title].push(disturbed.isQuantised ? Number(value.toFixed(places)) : value)
   }
-  const scatter = input.noisy === false ? 0 : 1
-  const offset = 1 + scatter * 0.005 * random.normal()
-  let drift = 0
-  let film = 0
+  const level = 1 + disturbed.levelSd * random.normal()
+  const film = filmOnWall(engine.film, stepS)
+  const exhaust = pipe(engine.transport, stepS)
+  const sensor = firstOrder(engine.sensor.lagS, stepS, 1)
+  const drift = wander(disturbed.drift, stepS, random)
+  // Draws of its own: a log with dropouts is otherwise the log without.
+  const isSilent = dropouts(disturbed.dropoutsPerMin, stepS, seeded(input.seed + 500_000))
   let ect = input.startC
   let trim = 0
-  let phiSensor = 1
-  let pointer = 0
-  const exhaust: number[] = []
-  const phis: number[] = []
-  let mass = 0
   let cutFor = 0
   const every = Math.round(1 / (input.rateHz * stepS))
-  const delaySteps = Math.round(engine.transport.t0S / stepS)
 
   moments.forEach(({ rpm, mapKpa, tpPct, overrun }, n) => {
     const t = n * stepS
     ect += (88 - ect) * (stepS / 240)
     const iatTrue = 22 + 8 * Math.exp(-rpm / 2500)
-    const pulsation = 0.7 * Math.sin(2 * Math.PI * ((rpm / 120) * engine.cylinders) * t)
-    // Pressure is sampled a little late and noisily; the controller sees what the sensor says.
-    const mapSeen = mapKpa + scatter * (pulsation * 0.4 + 0.25 * random.normal())
-    const warm = Math.max(0, (70 - ect) * 0.0045)
-    const after = Math.max(0, 0.25 * (1 - t / 20))
-    const before = moments[Math.max(0, n - 12)]!
-    const accel = Math.max(0, Math.min(0.3, (mapKpa - before.mapKpa - 6) * 0.012))
+    const strokes = Math.sin(2 * Math.PI * ((rpm / 120) * engine.cylinders) * t)
+    // The controller sees what the sensor says, strokes and noise and all.
+    const mapSeen = mapKpa + disturbed.pulsationKpa * strokes + disturbed.mapSdKpa * random.normal()
+    const { warm, after, accel } = enrichments(moments, n, ect)
     const wanted = valueAt(input.target.grid, input.target.lambda, rpm, mapSeen)
     cutFor = overrun && rpm > engine.idleRpm + 350 ? cutFor + stepS : 0
     const cut = input.cutsFuel !== false && cutFor > 0.3
+    const airTrueMg = fillingMg(engine, engine.trueVe(rpm, mapKpa), mapKpa, iatTrue)
     const ve = valueAt(input.flashed.grid, input.flashed.ve, rpm, mapSeen)
-    const perCycle = (mapKpa * engine.displacementL) / (gasConstantAir * (iatTrue + 273.15)) / engine.cylinders
-    const airTrueMg = (engine.trueVe(rpm, mapKpa) / 100) * perCycle * 1e6
-    const airAssumedMg =
-      (ve / 100) * ((mapSeen * engine.displacementL) / (gasConstantAir * (iatTrue + 273.15)) / engine.cylinders) * 1e6
     const multiplier = (1 + warm) * (1 + after) * (1 + accel) * (1 + trim)
-    const fuelMg = cut ? 0 : (airAssumedMg / engine.stoichAfr / wanted) * multiplier
+    const fuelMg = cut ? 0 : (fillingMg(engine, ve, mapSeen, iatTrue) / engine.stoichAfr / wanted) * multiplier
     const deliveredMg = cut ? 0 : Math.max(0, fuelMg + (input.deadTimeErrorMs ?? 0) * engine.injector.flowMgPerMs)
-    // Wall film on the flow of fuel, mg per second and cylinder.
     const perSecond = rpm / 120
-    const flow = deliveredMg * perSecond
-    const keep = Math.exp(-stepS / engine.film.tauS)
-    film = keep * film + (1 - keep) * engine.film.share * flow
-    const flowIn = (1 - engine.film.share) * flow + film
-    drift += -drift * (stepS / 40) + 0.007 * Math.sqrt((2 * stepS) / 40) * random.normal()
-    const phiPort = ((flowIn / perSecond) * engine.stoichAfr * offset * Math.exp(scatter * drift)) / airTrueMg
-    mass += airTrueMg * 1e-6 * perSecond * engine.cylinders * stepS
-    exhaust.push(mass)
-    phis.push(phiPort)
-    const reached = exhaust[Math.max(0, n - delaySteps)]! - engine.transport.massKg
-    const found = delayed(exhaust, phis, reached, pointer)
-    pointer = Math.max(0, Math.min(found.at, n - 1))
-    const exhaustKgS = airTrueMg * 1e-6 * perSecond * engine.cylinders
-    const arrived = found.value / (1 + (input.leakKgS ?? 0) / exhaustKgS)
-    phiSensor += (1 - Math.exp(-stepS / engine.sensor.lagS)) * (arrived - phiSensor)
-    const lambda = 1 / Math.max(phiSensor, 0.2) + scatter * 0.006 * random.normal()
+    const burntMg = film(deliveredMg * perSecond) / perSecond
+    const phiPort = (burntMg * engine.stoichAfr * level * Math.exp(drift())) / airTrueMg
+    const airKgS = airTrueMg * 1e-6 * perSecond * engine.cylinders
+    const phiSensor = sensor(exhaust(phiPort, airKgS) / (1 + (input.leakKgS ?? 0) / airKgS))
+    const lambda = 1 / Math.max(phiSensor, 0.2) + disturbed.lambdaSd * random.normal()
     const shown = Math.min(engine.sensor.high, Math.max(engine.sensor.low, lambda))
-    if (input.closedLoop && ect > 60 && !cut && mapKpa < 75)
+    const silent = isSilent()
+    if (input.closedLoop && ect > 60 && !cut && mapKpa < 75 && !silent)
       trim = Math.max(-0.15, Math.min(0.15, trim + 0.25 * (shown - wanted) * stepS))
     else trim *= 1 - stepS / 2
     if (n % every !== 0) return
     write('Time (s)', t, 2)
-    write('Engine speed (rpm)', rpm + scatter * 4 * random.normal(), 0)
+    write('Engine speed (rpm)', rpm + disturbed.rpmSd * random.normal(), 0)
     write('MAP (kPa)', mapSeen, 1)
-    write('Lambda', shown, 3)
+    write('Lambda', silent ? 0 : shown, 3)
     write('Target lambda', wanted, 3)
     write('ECT (°C)', ect, 0)
     write('IAT (°C)', input.dead === 'iat' ? -40 : iatTrue, 0)

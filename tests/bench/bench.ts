@@ -1,5 +1,6 @@
 /** `npm run bench`, or `npm run bench -- GROUP …`: accuracy and speed, each against its bar and its peers in the same run. */
 import { accuracy, guardTable } from './accuracy.ts'
+import { effects } from './effects.ts'
 import { faults } from './faults.ts'
 import { flashAndDrive } from './flash.ts'
 import { ingest } from './ingest.ts'
@@ -12,6 +13,7 @@ const groups: Readonly<Record<string, () => void | Promise<void>>> = {
   guard: guardTable,
   flash: flashAndDrive,
   faults,
+  effects,
   speed,
   ingest,
   web,

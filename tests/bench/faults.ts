@@ -28,6 +28,26 @@ export function faults(): void {
     const verdict = result.ok ? 'a proposal' : result.reason
     note({ group, name: `${name}: ${verdict}`, value: result.ok ? 0 : 1, unit: '', bar: 'refused', ok: !result.ok })
   }
+  const among = bad.map(([, drive]) => {
+    const culprit = { ...drive, id: 'bad', number: 2 }
+    const result = learn({
+      drives: [{ ...good, number: 1 }, culprit],
+      engine: plant.facts,
+      grid: plant.grid,
+      current: good.flashed.ve,
+      settings: openCap,
+    })
+    return !result.ok && result.driveId === culprit.id
+  })
+  const named = among.filter(Boolean).length
+  note({
+    group,
+    name: 'beside a good log the bad one is named',
+    value: named,
+    unit: `of ${bad.length}`,
+    bar: 'all',
+    ok: named === bad.length,
+  })
   const again = learnOn(plant, good)
   const same =
     first.ok && again.ok && first.proposal.fitted.every((value, cell) => value === again.proposal.fitted[cell])

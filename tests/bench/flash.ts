@@ -4,7 +4,8 @@ import { cornerAt, valueAt } from '../../shared/grid.ts'
 import { prepare, Role } from '../../server/core/model/prepare.ts'
 import { learn, type Learned } from '../../server/core/learn.ts'
 import { openCap } from './accuracy.ts'
-import { judge, note, rms } from './report.ts'
+import { kalman } from './peers.ts'
+import { judge, note, progress, rms } from './report.ts'
 import { driveScenario, plants, type Plant, type Scenario } from './scenarios.ts'
 import { bestTable, errorsPct } from './truth.ts'
 
@@ -34,22 +35,20 @@ interface Step {
   readonly within2: number
 }
 
-function play(
-  name: string,
-  plant: Plant,
-  habit: Scenario['habit'],
-  answerOf: (proposal: Learned) => Float64Array,
-  remembers: boolean,
-): Step[] {
+/** What a method puts into the cells, from the learner's proposal or from the drive and the table it drove with. */
+type Answer = (proposal: Learned, drive: Drive, table: Float64Array) => Float64Array
+
+function play(name: string, plant: Plant, habit: Scenario['habit'], answerOf: Answer, remembers: boolean): Step[] {
   let table: Float64Array = plant.start.slice()
   let drives: readonly Drive[] = []
   const steps: Step[] = []
   for (let flash = 1; flash <= flashes; flash += 1) {
+    progress(`${name}, flash ${flash} of ${flashes}`)
     const scenario = { name, plant, habit, seconds: 900, rateHz: 20, seed: 200 + 10 * flash, startC: 74 }
     const drive = { ...driveScenario(scenario, table), number: flash }
     drives = [...drives, drive]
     const proposal = withMemory(remembers ? drives : [drive], plant, table)
-    table = flashed(table, answerOf(proposal), proposal.hasEvidence)
+    table = flashed(table, answerOf(proposal, drive, table), proposal.hasEvidence)
     const known = [...proposal.evidenceS.keys()].filter((cell) => proposal.evidenceS[cell]! >= 1)
     const errors = errorsPct(table, bestTable(plant, drives), known)
     const lambda = tableErrorOn(driveScenario({ ...scenario, seed: scenario.seed + 10 }, table), plant, table, known)
@@ -81,16 +80,28 @@ function tableErrorOn(next: Drive, plant: Plant, table: Float64Array, known: rea
 export function flashAndDrive(): void {
   const group = 'flash'
   console.log('\nflash and drive, 15 minutes each: cell RMS / worst / lambda RMS, % after each flash')
-  const show = (name: string, method: string, steps: readonly Step[]) =>
+  const show = (name: string, method: string, steps: readonly Step[]) => {
+    progress('')
     console.log(
       `${name} ${method}`.padEnd(28),
       steps.map((s) => `${s.rms.toFixed(2)} / ${s.worst.toFixed(1)} / ${s.lambdaRms.toFixed(2)}`.padStart(20)).join(''),
     )
+  }
   const remembered = runs.map(({ name, plant, habit }) => {
     show(
       name,
       'nearest cell',
       play(name, plant, habit, (proposal) => proposal.handNearest, false),
+    )
+    show(
+      name,
+      'bilinear',
+      play(name, plant, habit, (proposal) => proposal.handBilinear, false),
+    )
+    show(
+      name,
+      'Kalman, restarted',
+      play(name, plant, habit, (_, drive, table) => kalman(drive, { ...plant, start: table }), false),
     )
     show(
       name,

@@ -51,6 +51,11 @@ export function judge(
 export const notMeasured = (group: string, name: string, peer: string): void =>
   note({ group, name, value: Number.NaN, unit: 'not measured', peer })
 
+/** A line that is written over by the next: work goes on, nothing is claimed. Only where a person watches. */
+export function progress(text: string): void {
+  if (process.stderr.isTTY) process.stderr.write(`\r\u001b[K${text}`)
+}
+
 export function writeReport(): void {
   mkdirSync('.data', { recursive: true })
   writeFileSync('.data/bench.json', `${JSON.stringify(rows, null, 2)}\n`)
@@ -64,10 +69,10 @@ export const median = (values: readonly number[]): number => values.toSorted((x,
 export const mean = (values: readonly number[]): number => values.reduce((sum, each) => sum + each, 0) / values.length
 export const rms = (values: readonly number[]): number => Math.sqrt(mean(values.map((value) => value * value)))
 
-/** Median seconds of a few runs. */
+/** Smallest of a few runs, s: whatever else the machine does only ever adds. */
 export function timed(work: () => void, runs = 3): number {
-  return median(
-    Array.from({ length: runs }, () => {
+  return Math.min(
+    ...Array.from({ length: runs }, () => {
       const start = performance.now()
       work()
       return (performance.now() - start) / 1000

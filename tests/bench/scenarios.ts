@@ -2,7 +2,12 @@
 import { flatbed, handMade, targetsOf, turboFour, type DemoVehicle } from '../../sample-logs/simulator/demo.ts'
 import type { Habit } from '../../sample-logs/simulator/driver.ts'
 import { breathing, type SimulatedEngine } from '../../sample-logs/simulator/engine.ts'
-import { simulate, type SimulatedLog, type SimulationInput } from '../../sample-logs/simulator/simulate.ts'
+import {
+  simulate,
+  type Disturbances,
+  type SimulatedLog,
+  type SimulationInput,
+} from '../../sample-logs/simulator/simulate.ts'
 import type { Drive, EngineFacts } from '../../server/core/drive.ts'
 import type { Grid } from '../../shared/grid.ts'
 
@@ -24,6 +29,7 @@ export interface Scenario {
   readonly seed: number
   readonly startC: number
   readonly closedLoop?: boolean
+  readonly disturbances?: Partial<Disturbances>
 }
 
 const factsOf = (engine: SimulatedEngine, boosted: boolean): EngineFacts => ({
@@ -114,6 +120,22 @@ export const scenarios: readonly Scenario[] = [
     seed: 110,
     closedLoop: true,
   },
+  {
+    ...twenty,
+    name: 'six, gusty wind',
+    plant: richSix,
+    habit: 'hills',
+    seed: 111,
+    disturbances: { drift: { sd: 0.01, tauS: 20 } },
+  },
+  {
+    ...twenty,
+    name: 'turbo, sensor drops out',
+    plant: richTurbo,
+    habit: 'hills',
+    seed: 112,
+    disturbances: { dropoutsPerMin: 3 },
+  },
 ]
 
 /** Drives the scenario. @param ve  the table in the controller, by default the one it starts with. */
@@ -133,6 +155,7 @@ export function driveScenario(
     seed: scenario.seed,
     startC: scenario.startC,
     ...(scenario.closedLoop ? { closedLoop: true } : {}),
+    ...(scenario.disturbances ? { disturbances: scenario.disturbances } : {}),
     ...extra,
   })
   return driveOf(log, plant, ve, `${scenario.name} ${scenario.seed}`)

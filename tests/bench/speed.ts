@@ -75,7 +75,7 @@ export function speed(): void {
   const hour = driveScenario(scenario(large, 3600, 50, 402))
   const learnHour = timed(
     () => learn({ drives: [hour], engine: large.facts, grid: large.grid, current: large.start, settings: openCap }),
-    1,
+    2,
   )
   judge(group, 'learn 1 h at 50 Hz, 256 cells', learnHour, 's', { atMost: 4, stretch: 1.5 })
 

@@ -1,6 +1,6 @@
 /** The forward model against closed forms, and the properties an honest sum of logs has. */
 import { describe, expect, test } from 'vitest'
-import { simulate } from '../../../sample-logs/simulator/simulate.ts'
+import { simulate, undisturbed } from '../../../sample-logs/simulator/simulate.ts'
 import { flatbed } from '../../../sample-logs/simulator/demo.ts'
 import { eliminateDrift } from '../../../server/core/fit/drift.ts'
 import { fitLog, retakeForm } from '../../../server/core/fit/log-fit.ts'
@@ -369,7 +369,7 @@ function solveDense(lower: Float64Array, b: Float64Array): Float64Array {
 
 describe('replay', () => {
   test('what the model says a drive would have read with another table is what the simulator reads when it drives again', () => {
-    const before = simulated(41, { noisy: false, seconds: 600 })
+    const before = simulated(41, { disturbances: undisturbed, seconds: 600 })
     const learned = learn({ drives: [before], ...ground })
     if (!learned.ok) throw new Error(learned.detail)
     const { fitted, sigmaPct, path } = learned.proposal
@@ -385,7 +385,7 @@ describe('replay', () => {
       noisePct: 0.5,
     })
     // The same foot on the pedal, the other table in the controller.
-    const after = simulated(41, { noisy: false, seconds: 600 }, table)
+    const after = simulated(41, { disturbances: undisturbed, seconds: 600 }, table)
     const misses: number[] = []
     for (let i = 200; i < after.timeS.length; i += 1) {
       const real = after.lambda[i]!
