@@ -1,8 +1,7 @@
 /** Logs that add up on the server: switched off and on without a second look at their samples, replayed, and looked into. */
 import { eq } from 'drizzle-orm'
 import { afterAll, beforeAll, describe, expect, test } from 'vitest'
-import { flatbed } from '../../sample-logs/simulator/demo.ts'
-import { simulate, toCsv } from '../../sample-logs/simulator/simulate.ts'
+import { toCsv } from '../../sample-logs/simulator/simulate.ts'
 import { logMemories } from '../../server/platform/db/schema/proposals.ts'
 import { uploadLog } from '../../shared/contract/logs.ts'
 import {
@@ -16,6 +15,7 @@ import {
 } from '../../shared/contract/proposals.ts'
 import { aWorkshop, startServer, type Crew, type TestServer } from '../support/server.ts'
 import { aVehicle } from '../support/vehicle.ts'
+import { flatbedLog } from '../support/drives.ts'
 
 let server: TestServer
 let crew: Crew
@@ -26,18 +26,7 @@ beforeAll(async () => {
   server = await startServer()
   crew = await aWorkshop(server, 'learning')
   const { vehicle, log } = await aVehicle(server, crew, { log: true })
-  const second = toCsv(
-    simulate({
-      engine: flatbed.engine,
-      flashed: { grid: flatbed.grid, ve: flatbed.flashed },
-      target: { grid: flatbed.grid, lambda: flatbed.target },
-      habit: 'track',
-      seconds: 300,
-      rateHz: 20,
-      seed: 8,
-      startC: 80,
-    }),
-  )
+  const second = toCsv(flatbedLog(8, { habit: 'track' }))
   const params = { vehicleId: vehicle.id }
   const other = (
     await crew.tuner.call(uploadLog, {

@@ -2,14 +2,10 @@
 import { flatbed, handMade, targetsOf, turboFour, type DemoVehicle } from '../../sample-logs/simulator/demo.ts'
 import type { Habit } from '../../sample-logs/simulator/driver.ts'
 import { breathing, type SimulatedEngine } from '../../sample-logs/simulator/engine.ts'
-import {
-  simulate,
-  type Disturbances,
-  type SimulatedLog,
-  type SimulationInput,
-} from '../../sample-logs/simulator/simulate.ts'
+import { simulate, type Disturbances, type SimulationInput } from '../../sample-logs/simulator/simulate.ts'
 import type { Drive, EngineFacts } from '../../server/core/drive.ts'
 import type { Grid } from '../../shared/grid.ts'
+import { driveOf } from '../support/drives.ts'
 
 export interface Plant {
   readonly name: string
@@ -158,28 +154,5 @@ export function driveScenario(
     ...(scenario.disturbances ? { disturbances: scenario.disturbances } : {}),
     ...extra,
   })
-  return driveOf(log, plant, ve, `${scenario.name} ${scenario.seed}`)
-}
-
-function driveOf(log: SimulatedLog, plant: Plant, ve: Float64Array, id: string): Drive {
-  const column = (title: string) => Float64Array.from(log[title] ?? [])
-  const multiplier = (title: string) => column(title).map((percent) => 1 + percent / 100)
-  return {
-    id,
-    timeS: column('Time (s)'),
-    rpm: column('Engine speed (rpm)'),
-    mapKpa: column('MAP (kPa)'),
-    lambda: column('Lambda'),
-    iatC: column('IAT (°C)'),
-    ectC: column('ECT (°C)'),
-    tpPct: column('TP (%)'),
-    trim: multiplier('Closed loop trim (%)'),
-    warmup: multiplier('Warm-up (%)'),
-    afterStart: multiplier('After-start (%)'),
-    accel: multiplier('Acceleration (%)'),
-    pulseWidthMs: column('Pulse width (ms)'),
-    targetLambda: column('Target lambda'),
-    flashed: { grid: plant.grid, ve },
-    target: { grid: plant.grid, lambda: plant.target },
-  }
+  return driveOf(log, `${scenario.name} ${scenario.seed}`, { grid: plant.grid, ve, target: plant.target })
 }

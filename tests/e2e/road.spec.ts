@@ -1,25 +1,13 @@
 /** The whole road in a browser with three people, then the same pages on a phone and in the dark. */
 import { readFileSync } from 'node:fs'
 import { expect, test } from '@playwright/test'
-import { flatbed } from '../../sample-logs/simulator/demo.ts'
-import { simulate, toCsv } from '../../sample-logs/simulator/simulate.ts'
+import { toCsv } from '../../sample-logs/simulator/simulate.ts'
 import { holdsUp, personOf, signedIn } from './people.ts'
+import { flatbedLog } from '../support/drives.ts'
 
 const picture = 'tests/e2e/pictures/workbench.png'
 
-const shortDrive = (): string =>
-  toCsv(
-    simulate({
-      engine: flatbed.engine,
-      flashed: { grid: flatbed.grid, ve: flatbed.flashed },
-      target: { grid: flatbed.grid, lambda: flatbed.target },
-      habit: 'hills',
-      seconds: 360,
-      rateHz: 20,
-      seed: 99,
-      startC: 80,
-    }),
-  )
+const shortDrive = (): string => toCsv(flatbedLog(99, { seconds: 360 }))
 
 test('A tuner uploads a log, accepts cells, a reviewer signs, the owner sees it, and the export reads back', async ({
   browser,

@@ -1,21 +1,13 @@
 /** The log page in a browser: a dead sensor leads, a finding leads to its stretch and its cells. */
 import { expect, test } from '@playwright/test'
 import { flatbed } from '../../sample-logs/simulator/demo.ts'
-import { simulate, toCsv } from '../../sample-logs/simulator/simulate.ts'
+import { toCsv } from '../../sample-logs/simulator/simulate.ts'
 import { holdsUp, signedIn } from './people.ts'
+import { flatbedLog } from '../support/drives.ts'
 
 /** Coolant at what an open circuit reads, and lean under load. */
 function deadCoolantDrive(): string {
-  const log = simulate({
-    engine: flatbed.engine,
-    flashed: { grid: flatbed.grid, ve: flatbed.flashed },
-    target: { grid: flatbed.grid, lambda: flatbed.target },
-    habit: 'hills',
-    seconds: 200,
-    rateHz: 10,
-    seed: 41,
-    startC: 80,
-  })
+  const log = flatbedLog(41, { seconds: 200, rateHz: 10 })
   const map = log['MAP (kPa)']!
   return toCsv({
     ...log,

@@ -1,11 +1,12 @@
 /** A vehicle with its tables and a short simulated drive, made through the API as a tuner would. */
 import { flatbed } from '../../sample-logs/simulator/demo.ts'
-import { simulate, toCsv } from '../../sample-logs/simulator/simulate.ts'
+import { toCsv } from '../../sample-logs/simulator/simulate.ts'
 import { tableToCsv } from '../../server/core/formats/table-csv.ts'
 import { uploadLog } from '../../shared/contract/logs.ts'
 import { bringTable } from '../../shared/contract/tables.ts'
 import { changeVehicle, createVehicle } from '../../shared/contract/vehicles.ts'
 import type { Crew, TestServer } from './server.ts'
+import { flatbedLog } from './drives.ts'
 
 export const veCsv = tableToCsv({
   grid: flatbed.grid,
@@ -25,18 +26,7 @@ export const targetCsv = tableToCsv({
 let drive: string | null = null
 /** Five minutes on the road, warm. */
 export function driveCsv(): string {
-  drive ??= toCsv(
-    simulate({
-      engine: flatbed.engine,
-      flashed: { grid: flatbed.grid, ve: flatbed.flashed },
-      target: { grid: flatbed.grid, lambda: flatbed.target },
-      habit: 'hills',
-      seconds: 300,
-      rateHz: 20,
-      seed: 7,
-      startC: 80,
-    }),
-  )
+  drive ??= toCsv(flatbedLog(7))
   return drive
 }
 

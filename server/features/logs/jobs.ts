@@ -18,7 +18,8 @@ import type { JobDefinition } from '../../platform/queue/run.ts'
 import { tell } from '../notices/service.ts'
 import { currentSheet, vehicleById } from '../vehicles/service.ts'
 import { writeChannels } from './columns.ts'
-import { headerHashOf, originalPieces } from './service.ts'
+import { originalPieces } from './originals.ts'
+import { headerHashOf } from './service.ts'
 import * as store from './store.ts'
 
 const Payload = z.object({ logId: z.string() })

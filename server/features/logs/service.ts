@@ -1,28 +1,28 @@
-/** Use cases of drive logs: receive, list, change, map, plot, hand out, and load for the learner. */
+/** Use cases of drive logs: receive, list, change, map, plot, hand out. */
 import { createHash } from 'node:crypto'
-import { createReadStream } from 'node:fs'
 import { Readable } from 'node:stream'
-import { createGunzip, createGzip } from 'node:zlib'
+import { createGunzip } from 'node:zlib'
 import { and, eq, sql } from 'drizzle-orm'
 import type { ChannelName, Log, LogLine, Trace } from '../../../shared/contract/logs.ts'
 import { channelNames, ChannelName as ChannelSchema } from '../../../shared/contract/logs.ts'
-import type { EngineSheetInput } from '../../../shared/contract/vehicles.ts'
-import type { Drive, EngineFacts } from '../../core/drive.ts'
 import { missingChannels } from '../../core/channels/recognise.ts'
 import { storedUnit } from '../../core/channels/convert.ts'
 import type { Deps } from '../../deps.ts'
 import { recordAudit } from '../../platform/audit/record.ts'
 import { isUniqueViolation, type Reader, type Tx } from '../../platform/db/client.ts'
-import { logOriginals, logs } from '../../platform/db/schema/logs.ts'
+import { logs } from '../../platform/db/schema/logs.ts'
 import { scopeOf, type Actor, type Scope } from '../../platform/http/actor.ts'
 import type { FileAnswer, UploadedFile } from '../../platform/http/on.ts'
 import { Problem } from '../../platform/http/problem.ts'
 import { enqueue } from '../../platform/queue/enqueue.ts'
-import { revisionInScope, tableById, type Table } from '../tables/service.ts'
+import { revisionInScope } from '../tables/service.ts'
 import { currentSheet, lockVehicle, vehicleInScope } from '../vehicles/service.ts'
 import { readChannels } from './columns.ts'
 import { traceOf } from './trace.ts'
+import { keepOriginal, originalPieces, sha256Of } from './originals.ts'
 import * as store from './store.ts'
+
+export { factsOf, loadDrive, readingOf } from './drives.ts'
 
 const order = { dead: 0, caution: 1, sound: 2, absent: 3 } as const
 
@@ -72,43 +72,6 @@ async function logInScope(db: Reader, scope: Scope, logId: string): Promise<stor
   const found = await store.logById(db, scope, logId)
   if (!found) throw new Problem('not-found')
   return found
-}
-
-async function sha256Of(path: string): Promise<string> {
-  const hash = createHash('sha256')
-  for await (const chunk of createReadStream(path)) hash.update(chunk as Uint8Array)
-  return hash.digest('hex')
-}
-
-const pieceBytes = 1 << 20
-
-/** Keeps the original, gzip, in pieces; never the whole of it in memory. */
-async function keepOriginal(tx: Tx, logId: string, path: string): Promise<void> {
-  let piece = 0
-  let held: Buffer[] = []
-  let size = 0
-  const flush = async () => {
-    if (size === 0) return
-    await tx.insert(logOriginals).values({ logId, piece, data: Buffer.concat(held) })
-    piece += 1
-    held = []
-    size = 0
-  }
-  for await (const chunk of createReadStream(path).pipe(createGzip({ level: 4 })) as AsyncIterable<Buffer>) {
-    held.push(chunk)
-    size += chunk.length
-    if (size >= pieceBytes) await flush()
-  }
-  await flush()
-}
-
-/** The gzip bytes of the kept original, piece by piece. */
-export async function* originalPieces(db: Reader, logId: string): AsyncGenerator<Uint8Array> {
-  for (let piece = 0; ; piece += 1) {
-    const data = await store.pieceOf(db, logId, piece)
-    if (!data) return
-    yield data
-  }
 }
 
 export interface UploadFacts {
@@ -343,66 +306,4 @@ export async function logsInScope(
   const chosen = all.filter((log) => logIds.includes(log.id))
   if (chosen.length !== new Set(logIds).size) throw new Problem('not-found')
   return chosen.sort((a, b) => a.number - b.number)
-}
-
-/** The engine's facts as the learner takes them; the injector's flow becomes mass of this fuel. */
-export const factsOf = (sheet: EngineSheetInput): EngineFacts => ({
-  displacementL: sheet.displacementL,
-  cylinders: sheet.cylinders,
-  boosted: sheet.boosted,
-  lambdaRange: { low: sheet.lambdaLow, high: sheet.lambdaHigh },
-  revLimitRpm: sheet.revLimitRpm,
-  stoichAfr: sheet.stoichAfr,
-  injector: {
-    mgPerMs: (sheet.injectorFlowCcMin * sheet.fuelDensityGPerCc) / 60,
-    deadTimeMs: sheet.deadTimeMs,
-  },
-})
-
-/** What a log's columns and its flashed table were when it was read: changes with every reading and every answer. */
-export async function readingOf(db: Reader, logId: string): Promise<unknown> {
-  const row = await store.rowById(db, logId)
-  const flashed = row?.flashedRevisionId ? await tableById(db, row.flashedRevisionId) : null
-  return [row?.sha256, row?.attempt, row?.mapping, row?.number, flashed?.checksum]
-}
-
-const multiplier = (percent: Float64Array | undefined): Float64Array | undefined =>
-  percent?.map((value) => 1 + value / 100)
-
-/** A log as the learner takes it: columns from the database, the table that was in the engine, the target in force. */
-export async function loadDrive({ db, pool }: Pick<Deps, 'db' | 'pool'>, logId: string, target: Table): Promise<Drive> {
-  const row = await store.rowById(db, logId)
-  const flashed = row?.flashedRevisionId ? await tableById(db, row.flashedRevisionId) : null
-  if (!row || !flashed)
-    throw new Problem('log-not-ready', { detail: 'Say which revision was in the engine when the log was recorded.' })
-  const c = await readChannels(pool, logId, channelNames)
-  const need = (name: ChannelName): Float64Array => {
-    const values = c.get(name)
-    if (!values) throw new Problem('log-not-ready', { detail: `Log ${row.number} has no ${name}.` })
-    return values
-  }
-  const optional = {
-    iatC: c.get('iat'),
-    ectC: c.get('ect'),
-    tpPct: c.get('tp'),
-    trim: multiplier(c.get('trim')),
-    warmup: multiplier(c.get('warmup')),
-    afterStart: multiplier(c.get('afterStart')),
-    accel: multiplier(c.get('accel')),
-    pulseWidthMs: c.get('pulseWidth'),
-    batteryV: c.get('battery'),
-    targetLambda: c.get('targetLambda'),
-  }
-  const present = Object.fromEntries(Object.entries(optional).filter(([, values]) => values !== undefined))
-  return {
-    id: row.id,
-    number: row.number,
-    timeS: need('time'),
-    rpm: need('rpm'),
-    mapKpa: need('map'),
-    lambda: need('lambda'),
-    ...present,
-    flashed: { grid: flashed.grid, ve: flashed.values },
-    target: { grid: target.grid, lambda: target.values },
-  }
 }

@@ -3,6 +3,7 @@ import * as contract from '../../../shared/contract/proposals.ts'
 import type { Deps } from '../../deps.ts'
 import { on, type Binder } from '../../platform/http/on.ts'
 import * as carrying from './carry-over.ts'
+import { chooseLogs } from './choose-logs.ts'
 import * as inspect from './inspect.ts'
 import * as proposals from './service.ts'
 
@@ -27,10 +28,7 @@ export function mountProposals(binder: Binder, deps: Deps): void {
     binder,
     contract.makeRevision,
   )(({ actor, params, body }) => proposals.makeRevision(deps, actor, params.proposalId, body))
-  on(
-    binder,
-    contract.chooseLogs,
-  )(({ actor, params, body }) => proposals.chooseLogs(deps, actor, params.proposalId, body))
+  on(binder, contract.chooseLogs)(({ actor, params, body }) => chooseLogs(deps, actor, params.proposalId, body))
   on(
     binder,
     contract.getCellSamples,

@@ -1,32 +1,19 @@
 /** The traces of a log: chosen channels on one time axis with one cursor; dragging, keys and buttons choose the stretch. */
 import { useQuery } from '@tanstack/react-query'
-import { useEffect, useRef, useState } from 'react'
+import { useState } from 'react'
 import type { ChannelName, Log, Trace } from '../../../shared/contract/logs.ts'
 import { Banner } from '../../ui/banner.tsx'
 import { Checkbox } from '../../ui/field.tsx'
 import { Loading } from '../../ui/loading.tsx'
 import type { Shade } from '../../ui/trace/trace-overlay.tsx'
 import { TracePanel } from '../../ui/trace/trace-panel.tsx'
+import { useWidth } from '../../ui/use-width.ts'
 import { channelWords } from './channel-words.ts'
 import { ExactValues } from './exact-values.tsx'
 import { logQueries } from './queries.ts'
 import { StretchBar, type StretchShown } from './stretch-bar.tsx'
 
 const usual: readonly ChannelName[] = ['rpm', 'map', 'lambda', 'tp']
-
-/** Width of the element, followed as it changes. */
-function useWidth() {
-  const ref = useRef<HTMLDivElement>(null)
-  const [width, setWidth] = useState(0)
-  useEffect(() => {
-    const element = ref.current
-    if (!element) return
-    const observer = new ResizeObserver(([entry]) => setWidth(entry?.contentRect.width ?? 0))
-    observer.observe(element)
-    return () => observer.disconnect()
-  }, [])
-  return { ref, width }
-}
 
 /** Lowest and highest reading of the bucket under the cursor, in words. */
 export function valueAtCursor(trace: Trace, cursorS: number): string {

@@ -1,5 +1,6 @@
 /** The readings behind a cell: as VE by log, their lambda error over time and over position, and the stretches they come from. */
-import { Axis, DataProvider, GlyphSeries, Grid as Lines, XYChart, buildChartTheme } from '@visx/xychart'
+import { Axis, DataProvider, GlyphSeries, Grid as Lines, XYChart } from '@visx/xychart'
+import { chartTheme } from '../../ui/chart-theme.ts'
 import { useQuery } from '@tanstack/react-query'
 import { useDeferredValue } from 'react'
 import type { Proposal } from '../../../shared/contract/proposals.ts'
@@ -12,14 +13,7 @@ import type { Surface } from './decisions.ts'
 import { stretchesOf, type Sample } from './evidence.ts'
 import { proposalQueries } from './queries.ts'
 
-const theme = buildChartTheme({
-  backgroundColor: 'transparent',
-  colors: ['var(--color-ink)'],
-  gridColor: 'var(--color-rule)',
-  gridColorDark: 'var(--color-rule-strong)',
-  tickLength: 4,
-  svgLabelSmall: { fill: 'var(--color-ink-quiet)', fontSize: 13 },
-})
+const theme = chartTheme('var(--color-ink)')
 
 interface CellSamplesProps {
   readonly proposal: Proposal & { surface: Surface }

@@ -1,41 +1,15 @@
 /** The table cut through the selected cell, along its row and its column: current against decided, with the doubt. */
-import {
-  AreaSeries,
-  Axis,
-  DataProvider,
-  GlyphSeries,
-  Grid as Lines,
-  LineSeries,
-  XYChart,
-  buildChartTheme,
-} from '@visx/xychart'
-import { memo, useEffect, useRef, useState } from 'react'
+import { AreaSeries, Axis, DataProvider, GlyphSeries, Grid as Lines, LineSeries, XYChart } from '@visx/xychart'
+import { chartTheme } from '../../ui/chart-theme.ts'
+import { memo } from 'react'
 import { formatNumber } from '../../lib/format.ts'
+import { useWidth } from '../../ui/use-width.ts'
 import type { Decided } from './decisions.ts'
 import { profileOf, type Cut, type ProfilePoint } from './profile-points.ts'
 
-const theme = buildChartTheme({
-  backgroundColor: 'transparent',
-  colors: ['var(--color-slate)', 'var(--color-copper)'],
-  gridColor: 'var(--color-rule)',
-  gridColorDark: 'var(--color-rule-strong)',
-  tickLength: 4,
-  svgLabelSmall: { fill: 'var(--color-ink-quiet)', fontSize: 13 },
-})
+const theme = chartTheme('var(--color-slate)', 'var(--color-copper)')
 
 const x = (point: ProfilePoint) => point.at
-
-/** The width a chart may take, followed as the page changes. */
-function useWidth() {
-  const box = useRef<HTMLDivElement>(null)
-  const [width, setWidth] = useState(340)
-  useEffect(() => {
-    const watch = new ResizeObserver(([entry]) => setWidth(Math.max(240, Math.floor(entry!.contentRect.width))))
-    watch.observe(box.current!)
-    return () => watch.disconnect()
-  }, [])
-  return { box, width }
-}
 
 export default memo(Profile)
 
@@ -56,7 +30,7 @@ function Profile({ decided, cell }: { decided: Decided; cell: number }) {
 }
 
 function CutChart({ decided, cell, cut }: { decided: Decided; cell: number; cut: Cut }) {
-  const { box, width } = useWidth()
+  const { ref, width } = useWidth(340)
   const { grid } = decided.surface
   const points = profileOf(decided, cell, cut)
   const here = points.find((point) => point.cell === cell)!
@@ -65,7 +39,7 @@ function CutChart({ decided, cell, cut }: { decided: Decided; cell: number; cut:
   const unit = cut === 'rpm' ? 'rpm' : 'kPa'
   const sentence = `VE along ${unit} at ${fixed}: at the cell ${formatNumber(here.current, 1)} now, ${formatNumber(here.after, 1)} decided or proposed`
   return (
-    <figure ref={box} className="chart min-w-0">
+    <figure ref={ref} className="chart min-w-0">
       <figcaption className="flex justify-between text-small">
         <b>At {fixed}</b>
         <span className="text-ink-faint">{unit}</span>
@@ -76,7 +50,7 @@ function CutChart({ decided, cell, cut }: { decided: Decided; cell: number; cut:
         yScale={{ type: 'linear', zero: false, nice: true }}
       >
         <XYChart
-          width={width}
+          width={Math.max(240, Math.floor(width))}
           height={170}
           margin={{ top: 6, right: 10, bottom: 24, left: 34 }}
           accessibilityLabel={sentence}

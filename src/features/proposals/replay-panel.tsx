@@ -1,23 +1,18 @@
 /** A drive replayed with the table as decided so far: what was measured, and what the model says it would have read. */
-import { AreaSeries, Axis, DataProvider, Grid as Lines, LineSeries, XYChart, buildChartTheme } from '@visx/xychart'
+import { AreaSeries, Axis, DataProvider, Grid as Lines, LineSeries, XYChart } from '@visx/xychart'
+import { chartTheme } from '../../ui/chart-theme.ts'
 import { useQuery } from '@tanstack/react-query'
-import { useEffect, useRef, useState } from 'react'
+import { useState } from 'react'
 import type { Proposal, Replay } from '../../../shared/contract/proposals.ts'
 import { formatClock, formatNumber } from '../../lib/format.ts'
 import { Banner } from '../../ui/banner.tsx'
 import { Button } from '../../ui/button.tsx'
 import { Loading } from '../../ui/loading.tsx'
+import { useWidth } from '../../ui/use-width.ts'
 import { proposalQueries } from './queries.ts'
 import { runsOf, type ReplayPoint } from './replay-points.ts'
 
-const theme = buildChartTheme({
-  backgroundColor: 'transparent',
-  colors: ['var(--color-ink)', 'var(--color-copper)'],
-  gridColor: 'var(--color-rule)',
-  gridColorDark: 'var(--color-rule-strong)',
-  tickLength: 4,
-  svgLabelSmall: { fill: 'var(--color-ink-quiet)', fontSize: 13 },
-})
+const theme = chartTheme('var(--color-ink)', 'var(--color-copper)')
 
 /** Seconds shown at once. */
 const windowS = 60
@@ -67,18 +62,13 @@ export default function ReplayPanel({ proposal }: { proposal: Proposal }) {
 const percent = (share: number) => `${formatNumber(100 * share)} %`
 
 function Panels({ replay }: { replay: Replay }) {
-  const box = useRef<HTMLDivElement>(null)
-  const [width, setWidth] = useState(340)
-  useEffect(() => {
-    const watch = new ResizeObserver(([entry]) => setWidth(Math.max(240, Math.floor(entry!.contentRect.width))))
-    watch.observe(box.current!)
-    return () => watch.disconnect()
-  }, [])
+  const { ref, width: free } = useWidth(340)
+  const width = Math.max(240, Math.floor(free))
   const { measured, predicted } = replay.onTarget
   const all = [...replay.measured, ...replay.predicted, ...replay.target].filter((value) => value !== null)
   const domain: [number, number] = [Math.min(...all, 0.8), Math.max(...all, 1.1)]
   return (
-    <div ref={box} className="mt-3">
+    <div ref={ref} className="mt-3">
       <p>
         Within 3 % of the target over the whole drive: <b>{percent(measured)}</b> of the time as measured,{' '}
         <b>{percent(predicted)}</b> with the table as decided so far.

@@ -1,5 +1,6 @@
 /** One channel over time: the band between lowest and highest readings, and the target where there is one. */
-import { Axis, DataProvider, Grid, LineSeries, XYChart, buildChartTheme } from '@visx/xychart'
+import { Axis, DataProvider, Grid, LineSeries, XYChart } from '@visx/xychart'
+import { chartTheme } from '../chart-theme.ts'
 import { formatClock } from '../../lib/format.ts'
 import { TraceOverlay, type OverlayProps } from './trace-overlay.tsx'
 import type { Trace } from '../../../shared/contract/logs.ts'
@@ -9,14 +10,7 @@ interface Point {
   readonly y: number
 }
 
-const theme = buildChartTheme({
-  backgroundColor: 'transparent',
-  colors: ['var(--color-ink)', 'var(--color-copper)'],
-  gridColor: 'var(--color-rule)',
-  gridColorDark: 'var(--color-rule-strong)',
-  tickLength: 4,
-  svgLabelSmall: { fill: 'var(--color-ink-quiet)', fontSize: 13 },
-})
+const theme = chartTheme('var(--color-ink)', 'var(--color-copper)')
 
 /** Every stretch gives its lowest and highest reading in turn, so that no spike is lost between pixels. */
 export function pointsOf(trace: Trace): Point[][] {

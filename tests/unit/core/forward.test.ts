@@ -1,6 +1,6 @@
 /** The forward model against closed forms, and the properties an honest sum of logs has. */
 import { describe, expect, test } from 'vitest'
-import { simulate, undisturbed } from '../../../sample-logs/simulator/simulate.ts'
+import { undisturbed, type SimulationInput } from '../../../sample-logs/simulator/simulate.ts'
 import { flatbed } from '../../../sample-logs/simulator/demo.ts'
 import { eliminateDrift } from '../../../server/core/fit/drift.ts'
 import { fitLog, retakeForm } from '../../../server/core/fit/log-fit.ts'
@@ -14,6 +14,7 @@ import { totalDelayS, type MixturePath } from '../../../server/core/model/path.t
 import { prepare, Role } from '../../../server/core/model/prepare.ts'
 import { replay } from '../../../server/core/replay.ts'
 import type { Drive, EngineFacts } from '../../../server/core/drive.ts'
+import { driveOf, flatbedLog } from '../../support/drives.ts'
 import type { Grid } from '../../../shared/grid.ts'
 
 const engine: EngineFacts = {
@@ -88,17 +89,7 @@ describe('the way of the mixture', () => {
   })
 
   test('a row of derivatives is the slope of the prediction, cell by cell', () => {
-    const log = simulate({
-      engine: flatbed.engine,
-      flashed: { grid: flatbed.grid, ve: flatbed.flashed },
-      target: { grid: flatbed.grid, lambda: flatbed.target },
-      habit: 'hills',
-      seconds: 60,
-      rateHz: 20,
-      seed: 5,
-      startC: 85,
-    })
-    const drive = driveOf(log)
+    const drive = simulated(5, { seconds: 60 })
     const prepared = prepare(drive, flatbedFacts, flatbed.grid)
     const path = { t0S: 0.08, massKg: 1e-3, lagS: 0.09, filmShare: 0.2, filmTauS: 0.5 }
     const at = (v: Float64Array) => {
@@ -134,44 +125,11 @@ const flatbedFacts: EngineFacts = {
   stoichAfr: 14.1,
 }
 
-function driveOf(log: ReturnType<typeof simulate>, id = 'a', ve: Float64Array = flatbed.flashed): Drive {
-  const column = (title: string) => Float64Array.from(log[title] ?? [])
-  const multiplier = (title: string) => column(title).map((percent) => 1 + percent / 100)
-  return {
-    id,
-    timeS: column('Time (s)'),
-    rpm: column('Engine speed (rpm)'),
-    mapKpa: column('MAP (kPa)'),
-    lambda: column('Lambda'),
-    iatC: column('IAT (°C)'),
-    ectC: column('ECT (°C)'),
-    tpPct: column('TP (%)'),
-    warmup: multiplier('Warm-up (%)'),
-    afterStart: multiplier('After-start (%)'),
-    accel: multiplier('Acceleration (%)'),
-    pulseWidthMs: column('Pulse width (ms)'),
-    targetLambda: column('Target lambda'),
-    flashed: { grid: flatbed.grid, ve },
-    target: { grid: flatbed.grid, lambda: flatbed.target },
-  }
+const simulated = (seed: number, extra: Partial<SimulationInput> = {}, ve = flatbed.flashed) => {
+  const { grid: axes, target } = flatbed
+  const log = flatbedLog(seed, { seconds: 400, startC: 85, flashed: { grid: axes, ve }, ...extra })
+  return driveOf(log, `log ${seed}`, { grid: axes, ve, target })
 }
-
-const simulated = (seed: number, extra: Partial<Parameters<typeof simulate>[0]> = {}, ve = flatbed.flashed) =>
-  driveOf(
-    simulate({
-      engine: flatbed.engine,
-      flashed: { grid: flatbed.grid, ve },
-      target: { grid: flatbed.grid, lambda: flatbed.target },
-      habit: 'hills',
-      seconds: 400,
-      rateHz: 20,
-      seed,
-      startC: 85,
-      ...extra,
-    }),
-    `log ${seed}`,
-    ve,
-  )
 const parts = priorParts(flatbed.grid)
 const ground = {
   engine: flatbedFacts,
