@@ -76,6 +76,31 @@ test('By keyboard alone: a range is edited, undone, calculated on, copied, and c
   expect(faults).toEqual([])
 })
 
+test('What is decided without a connection is kept, also when the tab closes, and stored when the connection returns', async ({
+  browser,
+}) => {
+  const { page } = await signedIn(browser, 'tuner')
+  await openWorkbench(page)
+  const cell = page.getByRole('gridcell', { name: /2500 rpm, 39 kPa/ })
+  await cell.click()
+  await page.route('**/decisions', (route) => route.abort())
+  await page.keyboard.press('k')
+  await expect(page.getByText('No connection', { exact: true })).toBeVisible()
+  await expect(page.getByRole('gridcell', { name: /2500 rpm, 39 kPa.*kept/ })).toBeVisible()
+  const address = page.url()
+  const later = await page.context().newPage()
+  await page.close()
+  await later.goto(address)
+  await expect(later.getByRole('gridcell', { name: /2500 rpm, 39 kPa.*kept/ })).toBeVisible()
+  await expect(later.getByText('Saved')).toBeVisible()
+  await later.reload()
+  await expect(later.getByRole('gridcell', { name: /2500 rpm, 39 kPa.*kept/ })).toBeVisible()
+  await later.getByRole('gridcell', { name: /2500 rpm, 39 kPa/ }).click()
+  await later.getByRole('button', { name: 'Open it again' }).click()
+  await expect(later.getByRole('gridcell', { name: /2500 rpm, 39 kPa.*open/ })).toBeVisible()
+  await expect(later.getByText('Saved')).toBeVisible()
+})
+
 test('Two people decide at once: the later one is told, keeps what was decided, and can decide it again', async ({
   browser,
 }) => {
