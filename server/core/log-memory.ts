@@ -34,7 +34,7 @@ export interface LogMemory {
   readonly inverseFilling: Float64Array
   /**
    * ln of fuel by pulse width and injector data over fuel by table and corrections, mean weighted by evidence; NaN where
-   * no pulse width is logged.
+   * no pulse width or no intake temperature is logged.
    */
   readonly routeGap: Float64Array
 }
@@ -163,7 +163,8 @@ function routeGapAt(
   i: number,
 ): number {
   const pulse = drive.pulseWidthMs?.[i]
-  if (!injector || pulse === undefined || prepared.asked[i] === 0) return Number.NaN
+  // By pulse width the charge must be known; the controller's own table divides its temperature out.
+  if (!injector || pulse === undefined || !drive.iatC || prepared.asked[i] === 0) return Number.NaN
   const fuelMg = (pulse - injector.deadTimeMs) * injector.mgPerMs
   const airMg = fillingMg(prepared.airPerVe[i]! * prepared.asked[i]!, drive.rpm[i]!, cylinders)
   return Math.log((fuelMg * stoichAfr) / airMg)

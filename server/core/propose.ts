@@ -14,7 +14,7 @@ import { airFlowKgS } from './model/airflow.ts'
 import { totalDelayS, type MixturePath } from './model/path.ts'
 
 /** Grows with every change that can change a number. Frozen with each proposal. */
-export const coreVersion = 'core-2'
+export const coreVersion = 'core-3'
 
 export interface LearnSettings {
   /** Largest step of a cell in one revision, %. */

@@ -180,3 +180,27 @@ describe('looking closer', () => {
     expect(mean / surface.fitted[cell]!).toBeCloseTo(1, 1)
   })
 })
+
+test('when the intake sensor of a log is dead, then nothing is said of the injectors on its −40 °C', async () => {
+  const { vehicle } = await aVehicle(server, crew)
+  const params = { vehicleId: vehicle.id }
+  const learn = async (title: string, extra: Parameters<typeof flatbedLog>[1]) => {
+    const log = (
+      await crew.tuner.call(uploadLog, {
+        params,
+        body: { title },
+        file: { name: `${title}.csv`, content: toCsv(flatbedLog(9, extra)) },
+      })
+    ).body
+    await server.drain()
+    const asked = await crew.tuner.call(requestProposal, { params, body: { logIds: [log.id], stepCapPct: 20 } })
+    await server.drain()
+    return (await fetchProposal(asked.body.id)).surface
+  }
+  const dead = await learn('dead', { dead: 'iat' })
+  expect(dead.diagnoses.map(({ kind }) => kind)).not.toContain('injector-flow')
+  expect(dead.byPulse.every((value) => value === null)).toBe(true)
+  const sound = await learn('sound', {})
+  const cell = sound.evidenceS.findIndex((seconds) => (seconds ?? 0) > 3)
+  expect(sound.byPulse[cell]! / sound.fitted[cell]!).toBeCloseTo(1, 1)
+})

@@ -85,9 +85,11 @@ function judgeBeside(channel: ChannelName, values: ArrayLike<number>, channels: 
 const movesWell = (channel: ChannelName, values: ArrayLike<number>): string => {
   const step = stepOf(values)
   const noise = noiseOf(values)
-  return Number.isFinite(step) && values.length >= enoughRows
-    ? `Moves as it should: steps of ${short(step)}, noise about ${short(noise)} ${storedUnit[channel]}.`
-    : 'Moves as it should.'
+  if (!Number.isFinite(step) || values.length < enoughRows) return 'Moves as it should.'
+  // Noise far below a step cannot be seen: what is left of it is arithmetic.
+  return noise < step / 10
+    ? `Moves as it should, in steps of ${short(step)} ${storedUnit[channel]}.`
+    : `Moves as it should: steps of ${short(step)}, noise about ${short(noise)} ${storedUnit[channel]}.`
 }
 
 /** A thermistor circuit that is open or shorted reads the end of its range: common practice, no source. */

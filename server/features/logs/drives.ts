@@ -1,3 +1,6 @@
+const isDead = (row: store.LogRow, channel: ChannelName): boolean =>
+  row.health.some((each) => each.channel === channel && each.state === 'dead')
+
 /** A log as the learner takes it: columns, the engine's facts, and what they depend on. */
 import { channelNames, type ChannelName } from '../../../shared/contract/logs.ts'
 import type { EngineSheetInput } from '../../../shared/contract/vehicles.ts'
@@ -46,7 +49,8 @@ export async function loadDrive({ db, pool }: Pick<Deps, 'db' | 'pool'>, logId: 
     return values
   }
   const optional = {
-    iatC: c.get('iat'),
+    // A dead sensor's −40 °C would make a quarter more air of every filling; an ordinary guess is nearer.
+    iatC: isDead(row, 'iat') ? undefined : c.get('iat'),
     ectC: c.get('ect'),
     tpPct: c.get('tp'),
     trim: multiplier(c.get('trim')),

@@ -60,7 +60,11 @@ export function RevisionMap({ revision, cell, onSelect, cellName }: RevisionMapP
         }
         snug
       />
-      <Legend view={view} unit={change ? '%, minus is leaner, plus is richer' : kind === 've' ? 'VE, %' : 'lambda'} />
+      <Legend
+        marks={provenance !== null}
+        view={view}
+        unit={change ? '%, minus is leaner, plus is richer' : kind === 've' ? 'VE, %' : 'lambda'}
+      />
     </>
   )
 }
