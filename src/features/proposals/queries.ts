@@ -78,7 +78,10 @@ export function useDecideCells(proposalId: string) {
       client.setQueryData(detail.queryKey, proposal)
     },
     // Refused because somebody else decided meanwhile: their decisions are fetched before anything more is sent.
-    onError: () => client.invalidateQueries({ queryKey: detail.queryKey }),
+    // Not waited for: without a connection that would take as long as its tries do.
+    onError: () => {
+      void client.invalidateQueries({ queryKey: detail.queryKey })
+    },
   })
   return {
     decide: mutation.mutateAsync,
