@@ -78,8 +78,8 @@ export function LogsRail({ proposal, vehicleId, maySwitch }: LogsRailProps) {
               {(share?.disagreement ?? 0) > disagrees ? (
                 <p className="mt-1 flex items-start gap-1.5 text-small text-copper">
                   <TriangleAlert size={14} strokeWidth={2.25} aria-hidden className="mt-0.5 shrink-0" />
-                  Speaks of another engine than the other logs do. Did something change: sensor, injectors, fuel, a
-                  leak? Switch it off, or learn from it alone.
+                  Disagrees with the other logs more than chance explains. Did something change: sensor, injectors,
+                  fuel, a leak? Then switch it off, or learn from it alone.
                 </p>
               ) : null}
             </li>
